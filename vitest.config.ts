@@ -1,0 +1,18 @@
+import { fileURLToPath } from "node:url";
+import react from "@vitejs/plugin-react";
+import { defineConfig } from "vitest/config";
+
+export default defineConfig({
+  plugins: [react()],
+  resolve: {
+    // Outside Next the package throws; in a test the same file runs in plain Node.
+    alias: { "server-only": fileURLToPath(new URL("./tests/support/empty.ts", import.meta.url)) },
+  },
+  test: {
+    include: ["tests/**/*.test.{ts,tsx}"],
+    exclude: ["tests/e2e/**", "node_modules/**"],
+    setupFiles: ["./tests/support/quiet.ts"],
+    testTimeout: 30_000,
+    hookTimeout: 60_000,
+  },
+});
