@@ -48,4 +48,10 @@ export const WARNING_CODES = [
 export type WarningCode = (typeof WARNING_CODES)[number];
 
 /** What rides on an answer: how grave, the finding in a few bold words, the sentence after it, and what to do. */
-export type Warning = { code: WarningCode; severity: "info" | "caution" | "danger"; title: string; text: string; remedy: string };
+export type Warning = {
+  code: WarningCode;
+  severity: "info" | "caution" | "danger";
+  title: string;
+  text: string;
+  remedy: string;
+};

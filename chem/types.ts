@@ -168,7 +168,7 @@ export type SolvedBlock = {
   residual: { value: number; bound: number };
   /** P has opposite signs, beyond its rounding bound, at these two ends */
   enclosure: { lowPH: number; highPH: number };
-  composition: { row: string; name: string; formula: string; /** mol/L */ concentration: number }[];
+  composition: { row: string; name: string; formula: string /** mol/L */; concentration: number }[];
   species: Species[];
   protonCondition: { components: Balance[]; sum: Balance };
   massBalances: Balance[];

@@ -1,0 +1,20 @@
+// Which key signs: the newest that is not retired, made at the first start.
+import "server-only";
+import { activeKey, addKey } from "../../db/keys.ts";
+import { database } from "./database.ts";
+import { settings } from "./env.ts";
+import { makeSigningKey, openSeal, type Seal } from "./seal.ts";
+
+declare global {
+  var counterleafSeal: { kid: string; seal: Seal } | undefined;
+}
+
+/** What `db/signatures.ts` and `db/witnessing.ts` are handed to seal a manifest with. */
+export async function signingSeal(): Promise<Seal> {
+  const db = await database();
+  const kept = (await activeKey(db)) ?? (await addKey(db, await makeSigningKey(settings().secret)));
+  if (globalThis.counterleafSeal?.kid !== kept.kid) {
+    globalThis.counterleafSeal = { kid: kept.kid, seal: await openSeal(kept, settings().secret) };
+  }
+  return globalThis.counterleafSeal.seal;
+}

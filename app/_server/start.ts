@@ -1,0 +1,66 @@
+// The start of a server process, and its end: open, migrate, seed, listen; and on a signal the same backwards.
+import "server-only";
+import { seedDemo } from "../../db/seed/demo.ts";
+import { store } from "./database.ts";
+import { settings } from "./env.ts";
+import { startJobs } from "./jobs.ts";
+import { log } from "./log.ts";
+import { onClose, processState } from "./process-state.ts";
+import { hashPassword } from "./secrets.ts";
+import { signingSeal } from "./signing-key.ts";
+
+const DRAIN_MS = 5_000;
+
+/** Called by instrumentation before the first request is answered. A start that fails says why in a sentence and ends the process. */
+export async function start(): Promise<void> {
+  if (process.env.NEXT_PHASE === "phase-production-build") return;
+  try {
+    const set = settings();
+    if (set.url.startsWith("http:") && !/^http:\/\/(localhost|127[.]0[.]0[.]1|\[::1\])(:|$)/.test(set.url)) {
+      log.warn({ url: set.url }, "the public address is not https: passwords and pages can be read on their way");
+    }
+    const { db, kind } = await store();
+    endOnSignals();
+    if (set.demo) await seedDemo(db, hashPassword);
+    await signingSeal();
+    onClose(startJobs());
+    log.info({ store: kind, demo: set.demo, url: set.url }, "open");
+  } catch (error) {
+    process.stderr.write(`${error instanceof Error ? error.message : "Counterleaf could not start."}\n`);
+    log.fatal({ error }, "could not start");
+    await closeAll();
+    process.exit(1);
+  }
+}
+
+/** Takes no more, ends the streams, waits for what is being answered, closes the store. */
+export async function closeAll(): Promise<void> {
+  const state = processState();
+  state.closing = true;
+  const closers = state.closers.splice(0).reverse();
+  const until = Date.now() + DRAIN_MS;
+  // The store was opened first, so its closer comes last: by then the streams have ended and nothing is in flight.
+  for (const [index, close] of closers.entries()) {
+    if (index === closers.length - 1) while (state.inFlight > 0 && Date.now() < until) await new Promise((done) => setTimeout(done, 20));
+    try {
+      await close();
+    } catch (error) {
+      log.error({ error }, "something did not close cleanly");
+    }
+  }
+}
+
+function endOnSignals(): void {
+  // Next's own handlers wait for open connections to end by themselves, which an event stream never does, and exit before the
+  // database is closed.
+  for (const signal of ["SIGINT", "SIGTERM"] as const) {
+    process.removeAllListeners(signal);
+    process.on(signal, () => {
+      if (processState().closing) return;
+      void closeAll().then(() => {
+        log.info({ signal }, "closed");
+        process.exit(0);
+      });
+    });
+  }
+}

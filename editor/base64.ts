@@ -1,0 +1,11 @@
+// Bytes as the event stream carries them.
+
+export function toBase64(bytes: Uint8Array): string {
+  let text = "";
+  for (const byte of bytes) text += String.fromCharCode(byte);
+  return btoa(text);
+}
+
+export function fromBase64(text: string): Uint8Array {
+  return Uint8Array.from(atob(text), (letter) => letter.charCodeAt(0));
+}

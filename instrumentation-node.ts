@@ -1,0 +1,1 @@
+export { start } from "./app/_server/start.ts";
