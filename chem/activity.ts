@@ -5,13 +5,18 @@ import type { ActivityModel } from "./types.ts";
 /** The Davies equation's linear term, per mol/L. C. W. Davies, Ion Association, Butterworths, London 1962 (from memory). */
 export const DAVIES_LINEAR = 0.3;
 
-export type ModelRange = { label: string; rangeText: string; /** mol/L; null: no ions at all */ maxIonicStrength: number | null };
+export type ModelRange = {
+  label: string;
+  rangeText: string /** mol/L; null: no ions at all */;
+  maxIonicStrength: number | null;
+};
 
 /** The models' names and the ionic strengths up to which each is usually trusted. */
 export const MODEL_RANGES = {
   ideal: {
     label: "Ideal (activity coefficients 1)",
-    rangeText: "exact only at infinite dilution; below about 0.001 mol/L ionic strength the error in pH stays under 0.02",
+    rangeText:
+      "exact only at infinite dilution; below about 0.001 mol/L ionic strength the error in pH stays under 0.02",
     maxIonicStrength: null,
   },
   davies: {

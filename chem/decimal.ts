@@ -99,9 +99,7 @@ function scaledQuotient(value: Exact): { mantissa: bigint; shift: number } {
   const magnitude = negative ? -value.numerator : value.numerator;
   const shift = QUOTIENT_BITS + bitLength(value.denominator) - bitLength(magnitude);
   const quotient =
-    shift >= 0
-      ? (magnitude << BigInt(shift)) / value.denominator
-      : magnitude / (value.denominator << BigInt(-shift));
+    shift >= 0 ? (magnitude << BigInt(shift)) / value.denominator : magnitude / (value.denominator << BigInt(-shift));
   return { mantissa: negative ? -quotient : quotient, shift };
 }
 

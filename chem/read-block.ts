@@ -30,7 +30,13 @@ const SHOWN_LENGTH = 40;
 /** One family part of a row: `concentration` in mol/L counts the formula unit's number of such parts. */
 export type Part = { row: number; family: number; lost: number; count: number; concentration: number };
 export type StrongPart = { row: number; kind: "proton" | "hydroxide"; count: number; concentration: number };
-export type IonInSolution = { ion: string; name: string; z: number; role: "spectator" | "metal"; concentration: number };
+export type IonInSolution = {
+  ion: string;
+  name: string;
+  z: number;
+  role: "spectator" | "metal";
+  concentration: number;
+};
 
 export type ReadBlock = {
   mixture: Mixture;
@@ -146,7 +152,12 @@ function readConditions(input: BlockInput, refuse: Refuse): { A: number; pKw: nu
   const temperature = parseDecimal(temperatureC);
   const assumed = parseDecimal(TEMPERATURE_C);
   if (temperature === null) {
-    refuse("conditions.not-a-number", "conditions.temperatureC", temperatureC, `The temperature ${quoted(temperatureC)} is not a number. Write 25.`);
+    refuse(
+      "conditions.not-a-number",
+      "conditions.temperatureC",
+      temperatureC,
+      `The temperature ${quoted(temperatureC)} is not a number. Write 25.`,
+    );
   } else if (assumed === null || compare(temperature.exact, assumed.exact) !== 0) {
     refuse(
       "temperature.outside-data",
@@ -170,7 +181,12 @@ function readCondition(
 ): number {
   const parsed = parseDecimal(text);
   if (parsed !== null && parsed.number >= range.low && parsed.number <= range.high) return parsed.number;
-  refuse("conditions.not-a-number", field, text, `${name} must be a number between ${range.low} and ${range.high}, not ${quoted(text)}.`);
+  refuse(
+    "conditions.not-a-number",
+    field,
+    text,
+    `${name} must be a number between ${range.low} and ${range.high}, not ${quoted(text)}.`,
+  );
   return Number.NaN;
 }
 
@@ -191,10 +207,17 @@ function readFamily(
       `${family.name} has ${family.forms.length} forms and so needs ${Math.max(0, family.forms.length - 1)} constants, but ${steps} are given.`,
     );
   if (steps > MAX_STEPS)
-    refuse("family.too-many-steps", field, steps, `${family.name} has ${steps} dissociation steps; ${MAX_STEPS} can be solved.`);
+    refuse(
+      "family.too-many-steps",
+      field,
+      steps,
+      `${family.name} has ${steps} dissociation steps; ${MAX_STEPS} can be solved.`,
+    );
   if (!Number.isInteger(family.z0) || Math.abs(family.z0) > LARGEST_CHARGE)
     refuse("conditions.not-a-number", `${field}.z0`, family.z0, `The charge of ${family.name} must be a whole number.`);
-  const pKa = family.constants.map((constant, step) => readConstant(family, constant, step, input, A, converted, refuse));
+  const pKa = family.constants.map((constant, step) =>
+    readConstant(family, constant, step, input, A, converted, refuse),
+  );
   return { name: family.id, z0: family.z0, pKa };
 }
 
@@ -211,7 +234,12 @@ function readConstant(
   const field = `families.${family.id}.constants.${step + 1}`;
   const parsed = parseDecimal(constant.pKa);
   if (parsed === null || Math.abs(parsed.number) > LARGEST_PK) {
-    refuse("conditions.not-a-number", field, constant.pKa, `pKa ${step + 1} of ${family.name} is not a usable number: ${quoted(constant.pKa)}.`);
+    refuse(
+      "conditions.not-a-number",
+      field,
+      constant.pKa,
+      `pKa ${step + 1} of ${family.name} is not a usable number: ${quoted(constant.pKa)}.`,
+    );
     return Number.NaN;
   }
   // Thermodynamic constants are tabulated for molalities; conditional ones for amount concentrations.
@@ -248,7 +276,12 @@ function readVolume(input: BlockInput, refuse: Refuse): Exact | null {
   const { madeUpTo } = input;
   if (madeUpTo === null || madeUpTo.value.trim() === "") {
     if (needed)
-      refuse("volume.missing", "madeUpTo", null, "A row is a mass or a volume: say to what final volume the solution was made up.");
+      refuse(
+        "volume.missing",
+        "madeUpTo",
+        null,
+        "A row is a mass or a volume: say to what final volume the solution was made up.",
+      );
     return null;
   }
   const parsed = parseDecimal(madeUpTo.value);
@@ -299,7 +332,12 @@ function readValue(amount: AmountInput, field: string, refuse: Refuse): Exact | 
   }
   const parsed = parseDecimal(text);
   if (parsed === null) {
-    refuse("amount.not-a-number", field, text, `${quoted(text)} is not a number. Use digits and one decimal point, such as 0.100 or 1e-7.`);
+    refuse(
+      "amount.not-a-number",
+      field,
+      text,
+      `${quoted(text)} is not a number. Use digits and one decimal point, such as 0.100 or 1e-7.`,
+    );
     return null;
   }
   if (sign(parsed.exact) < 0) {
@@ -395,7 +433,12 @@ function checkGives(
     if (gives.kind === "family") {
       const family = families[familyIndex.get(gives.family) ?? -1];
       if (family === undefined) {
-        refuse("family.unknown", field, gives.family, `No constants are given for the acid family ${quoted(gives.family)} of ${row.name}.`);
+        refuse(
+          "family.unknown",
+          field,
+          gives.family,
+          `No constants are given for the acid family ${quoted(gives.family)} of ${row.name}.`,
+        );
         known = false;
         continue;
       }
@@ -411,7 +454,12 @@ function checkGives(
       }
     }
     if (count === null || sign(count.exact) <= 0 || z === null) {
-      refuse("composition.not-neutral", field, gives.count, `The library's entry for ${row.name} is not usable: a count or a charge in it is not a whole number.`);
+      refuse(
+        "composition.not-neutral",
+        field,
+        gives.count,
+        `The library's entry for ${row.name} is not usable: a count or a charge in it is not a whole number.`,
+      );
       known = false;
       continue;
     }
@@ -464,5 +512,7 @@ function quoted(text: string): string {
 
 /** A number for a sentence: three significant digits. */
 export function shown(value: number): string {
-  return value === 0 ? "0" : Number(value.toPrecision(3)).toString().replace("-", "−").replace("e−", "e-").replace("e+", "e");
+  return value === 0
+    ? "0"
+    : Number(value.toPrecision(3)).toString().replace("-", "−").replace("e−", "e-").replace("e+", "e");
 }

@@ -47,7 +47,8 @@ export function solve(mixture: Mixture): Solution {
   const found: RootFound = { h: 0, ionicStrength: 0, iterations: 0 };
   if (!findRoot(work, found)) return { ok: false, reason: "The iteration did not converge." };
   const ends = new Float64Array(4);
-  if (!enclose(work, found.h, ends)) return { ok: false, reason: "No sign change of the proton condition could be shown round the root." };
+  if (!enclose(work, found.h, ends))
+    return { ok: false, reason: "No sign change of the proton condition could be shown round the root." };
   const [lowPH = Number.NaN, highPH = Number.NaN, residual = Number.NaN, bound = Number.NaN] = ends;
   const gamma1 = work.gamma1;
   return {
@@ -170,14 +171,16 @@ export function mixtureFromText(text: MixtureText): { ok: true; mixture: Mixture
     if (f === undefined || family === undefined) return { ok: false, reason: `unknown family ${component.family}` };
     if (!Number.isInteger(component.lost) || component.lost < 0 || component.lost > family.pKa.length)
       return { ok: false, reason: `${component.family} has no form that lost ${component.lost}` };
-    if (concentration === null) return { ok: false, reason: `the concentration "${component.concentration}" is not a number from zero up` };
+    if (concentration === null)
+      return { ok: false, reason: `the concentration "${component.concentration}" is not a number from zero up` };
     components.push({ family: f, lost: component.lost, concentration });
     charge = add(charge, multiply(concentration, integer(family.z0 - component.lost)));
   }
   const ions: Mixture["ions"] = [];
   for (const ion of text.ions) {
     const concentration = readConcentration(ion.concentration);
-    if (concentration === null) return { ok: false, reason: `the concentration "${ion.concentration}" is not a number from zero up` };
+    if (concentration === null)
+      return { ok: false, reason: `the concentration "${ion.concentration}" is not a number from zero up` };
     ions.push({ z: ion.z, concentration });
     charge = add(charge, multiply(concentration, integer(ion.z)));
   }

@@ -11,7 +11,8 @@ export const TEMPERATURE_C = "25";
  */
 export const pKw25 = {
   value: "13.997",
-  source: "IAPWS R11-24 (2024), 25 °C, 0.1 MPa, converted from molality to amount concentration with the density of water",
+  source:
+    "IAPWS R11-24 (2024), 25 °C, 0.1 MPa, converted from molality to amount concentration with the density of water",
 } as const;
 
 /**
@@ -20,7 +21,8 @@ export const pKw25 = {
  */
 export const debyeHuckelA25 = {
   value: "0.5105",
-  source: "computed from the permittivity of water (IAPWS R8-97) and its density (G. S. Kell, J. Chem. Eng. Data 20 (1975) 97)",
+  source:
+    "computed from the permittivity of water (IAPWS R8-97) and its density (G. S. Kell, J. Chem. Eng. Data 20 (1975) 97)",
 } as const;
 
 /** Density of water at 25 °C and 0.1 MPa in kg/L, IAPWS-95. */

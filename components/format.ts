@@ -380,5 +380,5 @@ function zoneName(when: Date, timeZone: string): string {
 function offsetName(when: Date, timeZone: string): string {
   const parts = new Intl.DateTimeFormat("en-GB", { timeZone, timeZoneName: "shortOffset" }).formatToParts(when);
   const offset = parts.find((each) => each.type === "timeZoneName")?.value ?? "UTC";
-  return offset.replace("GMT", "UTC").replace("-", MINUS);
+  return offset.replace("GMT", "UTC").replace("-", MINUS).replace(/\+0$/, "");
 }

@@ -1,7 +1,6 @@
 // The content that a signature is given for: one canonical JSON text (RFC 8785), version 1, made from what the store holds.
 // A change of this shape is a new version beside this one, never a change of it: signed texts stay as they are.
 import { and, asc, eq, inArray, lt } from "drizzle-orm";
-import { z } from "zod";
 import type { BlockInput, Outcome, SolvedBlock } from "../chem/index.ts";
 import {
   canonicalText,
@@ -148,18 +147,6 @@ export async function buildContent(db: Db, revision: Revision): Promise<BuiltCon
   const hindrances = findHindrances(content, found.duplicates, recorded.isAhead);
   return { content, text, sha256: sha256Hex(text), derived, hindrances };
 }
-
-/** Reads signed content back. Throws for a version that this program does not know. */
-export function parseContent(text: string): SignedContent {
-  return contentShape.parse(JSON.parse(text));
-}
-
-/** The text is held by its hash, which is compared wherever it counts: the kind is checked here, the body is trusted. */
-const contentShape = z.custom<SignedContent>(
-  (value) =>
-    z.object({ format: z.literal(CONTENT_FORMAT), version: z.literal(CONTENT_VERSION) }).safeParse(value).success,
-  { error: "The store holds signed content of an unknown version." },
-);
 
 async function solvedBlocks(db: Db, blocks: readonly EquilibriumBlock[]): Promise<ContentBlock[]> {
   const solved: ContentBlock[] = [];

@@ -43,3 +43,8 @@ export function dayIn(time: Date, timeZone: string): string {
 function dayNumber(day: string): number {
   return Date.parse(`${day}T00:00:00Z`);
 }
+
+/** Whole days from one time to another, none when it lies ahead. */
+export function daysBetween(from: Date, to: Date): number {
+  return Math.max(0, Math.floor((to.getTime() - from.getTime()) / DAY_MS));
+}

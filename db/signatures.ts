@@ -11,8 +11,8 @@ import { postMail } from "./mail.ts";
 import { MEANINGS, manifestText, roleOf, type Seal, type Signature, type SignatureKind } from "./manifest.ts";
 import { demandWhole, findOpening } from "./openings.ts";
 import { type Actor, demand } from "./policy.ts";
-import { memberships, personRoles, user } from "./schema/people.ts";
-import { entries, revisions, signatures, signedContents } from "./schema/records.ts";
+import { personRoles, user } from "./schema/people.ts";
+import { entries, memberships, revisions, signatures, signedContents } from "./schema/records.ts";
 import { findRevision, lockEntryAndRevision, type Revision } from "./subjects.ts";
 
 export type ContentToSign = {

@@ -3,7 +3,7 @@
 //
 // A lock is one statement and what is read under it another: a statement that had to wait for a row still sees every other
 // table as it was before the wait. The lock is `no key update`, which does not stand in the way of rows that only refer here.
-import { eq, sql } from "drizzle-orm";
+import { type AnyColumn, eq, type SQL, sql } from "drizzle-orm";
 import type { Db } from "./client.ts";
 import { Refused } from "./errors.ts";
 import { type Actor, type EntrySubject, isRole } from "./policy.ts";
@@ -92,12 +92,9 @@ function selectRevision(db: Db, actor: Actor, revisionId: string) {
       contributorIds: sql<
         string[]
       >`array(select c.person_id from contributors c where c.entry_id = ${entries.id} order by c.since, c.person_id)`,
-      actorIsMember: sql<boolean>`exists (select 1 from memberships m where m.notebook_id = ${notebooks.id} and m.person_id = ${actor.id})`,
-      actorRoles: sql<string[]>`array(select p.role from person_roles p where p.person_id = ${actor.id})`,
+      ...rightsOf(actor, notebooks.id),
       authorName: user.name,
       authorTimeZone: user.timeZone,
-      actorMaySign: sql<boolean>`exists (select 1 from "user" u where u.id = ${actor.id} and u.signing_held_at is null)`,
-      actorIsOpen: sql<boolean>`exists (select 1 from "user" u where u.id = ${actor.id} and u.closed_at is null)`,
     })
     .from(revisions)
     .innerJoin(entries, eq(entries.id, revisions.entryId))
@@ -122,5 +119,24 @@ function withRightsNow(
     memberOf: now.actorIsMember && now.actorIsOpen ? [...others, now.notebookId] : others,
     roles: now.actorRoles.filter(isRole),
     signingHeld: !now.actorMaySign,
+  };
+}
+
+/** The actor with roles and membership of one notebook as they stand now; for verbs on a notebook. */
+export async function actorNow(tx: Db, actor: Actor, notebookId: string): Promise<Actor> {
+  const [now] = await tx
+    .select({ notebookId: sql<string>`${notebookId}::text`, ...rightsOf(actor, sql`${notebookId}`) })
+    .from(user)
+    .where(eq(user.id, actor.id));
+  if (now === undefined) throw new Refused("session.ended");
+  return withRightsNow(actor, now);
+}
+
+function rightsOf(actor: Actor, notebookId: SQL | AnyColumn) {
+  return {
+    actorIsMember: sql<boolean>`exists (select 1 from memberships m where m.notebook_id = ${notebookId} and m.person_id = ${actor.id})`,
+    actorRoles: sql<string[]>`array(select p.role from person_roles p where p.person_id = ${actor.id})`,
+    actorMaySign: sql<boolean>`exists (select 1 from "user" u where u.id = ${actor.id} and u.signing_held_at is null)`,
+    actorIsOpen: sql<boolean>`exists (select 1 from "user" u where u.id = ${actor.id} and u.closed_at is null)`,
   };
 }

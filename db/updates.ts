@@ -38,7 +38,8 @@ export async function appendUpdate(db: Db, actor: Actor, input: UpdateInput): Pr
   if (!/^[\w-]{1,64}$/.test(input.updateId))
     throw new Refused("update.invalid", { reason: "The change has no proper id." });
   if (input.bytes.length > LARGEST_UPDATE_BYTES) throw new Refused("update.too-large", { limit: LARGEST_UPDATE_BYTES });
-  await takeFrom(db, `updates:${actor.id}`, UPDATES_A_MINUTE, MINUTE_MS);
+  const taken = await takeFrom(db, `updates:${actor.id}`, UPDATES_A_MINUTE, MINUTE_MS);
+  if (!taken.ok) throw new Refused("update.too-many", { retryAfterS: taken.retryAfterS });
   try {
     return await db.transaction((tx) => acceptUpdate(tx, actor, input));
   } catch (refusal) {

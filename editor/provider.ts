@@ -1,18 +1,22 @@
-// Yjs ↔ HTTP. Every change of this browser gets an id, is kept on the device, posted in order, and forgotten only when the server
-// has said that it is committed. What others type comes back as Server-Sent Events. Nothing here knows the editor.
+// Yjs ↔ HTTP. What is typed here is merged for a moment and handed to the sender; what others type comes back as Server-Sent
+// Events; who is on the page is posted and never stored. Nothing here knows the editor.
 import { Awareness, applyAwarenessUpdate, encodeAwarenessUpdate, removeAwarenessStates } from "y-protocols/awareness";
 import * as Y from "yjs";
-import { type ProblemError, problemOf } from "../components/query/http.ts";
+import { problemOf } from "../components/query/http.ts";
 import { fromBase64, toBase64 } from "./base64.ts";
-import type { Outbox, Waiting } from "./outbox.ts";
+import { colourOf } from "./colours.ts";
+import type { Outbox } from "./outbox.ts";
 import type { SaveStatus } from "./save-status.ts";
+import { makeSender, NOT_DRAFT } from "./sender.ts";
 import { holdTab, newName, whenTabIsGone } from "./tabs.ts";
 
-export type Leaf = Omit<SaveStatus, "unsavedFields"> & {
-  /** the page has arrived from the server at least once */
+/** How it stands with the page: the save status without the fields, whether it has arrived, and the revision's state. */
+export type PageLine = Omit<SaveStatus, "unsavedFields"> & {
   isLoaded: boolean;
-  /** the revision's state as last heard: typing is possible in a draft only */
+  /** as last heard; typing is possible in a draft only */
   state: string;
+  /** the problem's code when a change was refused */
+  refusedCode: string | null;
 };
 
 export type ProviderOptions = {
@@ -20,9 +24,9 @@ export type ProviderOptions = {
   person: { id: string; name: string };
   /** keeps what waits; null where the device keeps nothing */
   outbox: Outbox | null;
-  onChange: (leaf: Leaf) => void;
-  /** what others are asked through; tests hand in their own */
-  fetch?: typeof globalThis.fetch;
+  onChange: (line: PageLine) => void;
+  /** tests hand in their own */
+  ask?: typeof globalThis.fetch;
   openEvents?: (path: string) => EventSource;
 };
 
@@ -31,28 +35,29 @@ export type Provider = {
   awareness: Awareness;
   /** tries at once what waits for its turn */
   retryNow(): void;
-  /** forgets what the server refused; the caller has offered its text */
+  /** forgets what the server refused, once its text was offered */
   discardRefused(): Promise<void>;
-  /** hands over what is not yet on the device, and stops */
+  /** keeps what is not on the device yet, says goodbye, and stops */
   destroy(): void;
 };
 
-/** Updates of this origin came from the server or from another tab of this device: they are not sent again. */
+/** Updates of this origin came from the server, or from another tab by way of the device: they are not queued again. */
 const RECEIVED = Symbol("received");
 const MERGE_MS = 150;
+const MERGED_BYTES = 256 * 1024;
 const PRESENCE_MS = 300;
 const FIRST_RETRY_MS = 500;
 const LAST_RETRY_MS = 15_000;
-const SIGNED_OUT_RETRY_MS = 5_000;
 const TAKEOVER_MS = 10_000;
 const HIDDEN_MS = 60_000;
-/** A browser lets a page that is going send this much at most. */
-const KEEPALIVE_BYTES = 60_000;
-const NOT_MERGED_BYTES = 256 * 1024;
+/** EventSource.CLOSED: the browser has given up, which it does for any answer but 200. */
+const CLOSED = 2;
+
+type TimerName = "merge" | "stream" | "presence" | "takeover" | "hidden";
 
 export function openProvider(options: ProviderOptions): Provider {
   const { revisionId, person, outbox, onChange } = options;
-  const ask = options.fetch ?? globalThis.fetch.bind(globalThis);
+  const ask = options.ask ?? globalThis.fetch.bind(globalThis);
   const openEvents = options.openEvents ?? ((path) => new EventSource(path));
   const base = `/api/revisions/${encodeURIComponent(revisionId)}`;
   const tab = newName();
@@ -61,66 +66,60 @@ export function openProvider(options: ProviderOptions): Provider {
   const doc = new Y.Doc({ gc: false });
   const awareness = new Awareness(doc);
   awareness.setLocalStateField("user", { id: person.id, name: person.name, color: colourOf(person.id) });
-
+  const timers = new Map<TimerName, ReturnType<typeof setTimeout>>();
   let buffer: Uint8Array[] = [];
   let bufferedBytes = 0;
-  const queue: Waiting[] = [];
-  let lastAt = 0;
   let isLoaded = false;
   let state = "draft";
   let isStreamOpen = false;
   let isPaused = false;
-  let isPosting = false;
-  let isUnreachable = false;
-  let isSignedOut = false;
   let isGone = false;
-  /** a change that the server refused for good; what comes after it waits with it */
-  let refusal: ProblemError | null = null;
-  let deviceFails = outbox === null;
-  let resendAll = false;
-  let retryMs = FIRST_RETRY_MS;
+  let resendsAll = false;
+  let streamRetryMs = FIRST_RETRY_MS;
   let events: EventSource | null = null;
-  const timers = new Map<
-    "merge" | "post" | "stream" | "presence" | "takeover" | "hidden",
-    ReturnType<typeof setTimeout>
-  >();
-
-  // ---- What is told ----------------------------------------------------------------------------------------------
-
   let told = "";
+
+  const sender = makeSender({
+    path: `${base}/updates`,
+    personId: person.id,
+    tab,
+    outbox,
+    ask,
+    onChange: tell,
+    onIncomplete: () => {
+      resendsAll = true;
+      openStream();
+    },
+  });
+
   function tell(): void {
     if (isGone) return;
-    const waiting = queue.length + (buffer.length > 0 ? 1 : 0);
+    const waiting = sender.queue.length + (buffer.length > 0 ? 1 : 0);
+    const { refusal } = sender;
     const kind = kindOf(waiting);
-    const leaf: Leaf = { kind, waiting, isLoaded, state, ...detailOf(kind, waiting) };
-    const text = JSON.stringify(leaf);
+    const line: PageLine = { kind, waiting, isLoaded, state, refusedCode: refusal?.problem.code ?? null };
+    if (refusal !== null) line.detail = refusal.message;
+    else if (waiting > 0 && !sender.isKept && kind !== "saving") line.detail = NOT_KEPT;
+    const text = JSON.stringify(line);
     if (text === told) return;
     told = text;
-    onChange(leaf);
+    onChange(line);
   }
 
   function kindOf(waiting: number): SaveStatus["kind"] {
-    if (refusal !== null) return "refused";
-    if (isSignedOut) return "signed-out";
-    if (isUnreachable || (isLoaded && !isStreamOpen && !isPaused)) return "offline";
+    if (sender.refusal !== null) return "refused";
+    if (sender.isSignedOut) return "signed-out";
+    if (sender.isUnreachable || (isLoaded && !isStreamOpen && !isPaused)) return "offline";
     return waiting > 0 ? "saving" : "saved";
   }
 
-  function detailOf(kind: SaveStatus["kind"], waiting: number): { detail?: string } {
-    if (refusal !== null) return { detail: refusal.message };
-    if (waiting > 0 && deviceFails && kind !== "saving") {
-      return { detail: "This device does not keep changes: leave the page open until they are saved." };
-    }
-    return {};
-  }
-
-  // ---- Out: buffer, keep, post -------------------------------------------------------------------------------------
+  // ---- Out ---------------------------------------------------------------------------------------------------------
 
   doc.on("update", (update: Uint8Array, origin: unknown) => {
     if (origin === RECEIVED) return;
     buffer.push(update);
     bufferedBytes += update.length;
-    if (bufferedBytes > NOT_MERGED_BYTES) flush();
+    if (bufferedBytes > MERGED_BYTES) flush();
     else if (!timers.has("merge")) later("merge", MERGE_MS, flush);
     tell();
   });
@@ -128,121 +127,14 @@ export function openProvider(options: ProviderOptions): Provider {
   function flush(): void {
     cancel("merge");
     if (buffer.length === 0) return;
-    enqueue(buffer.length === 1 && buffer[0] !== undefined ? buffer[0] : Y.mergeUpdates(buffer));
+    const merged = Y.mergeUpdates(buffer);
     buffer = [];
     bufferedBytes = 0;
+    sender.enqueue(merged);
     tell();
   }
 
-  function enqueue(bytes: Uint8Array): void {
-    lastAt = Math.max(Date.now(), lastAt + 1);
-    const update: Waiting = { id: newName(), bytes, tab, at: lastAt };
-    queue.push(update);
-    keep(update).then(() => void post());
-  }
-
-  async function keep(update: Waiting): Promise<void> {
-    if (outbox === null) return;
-    try {
-      await outbox.put(update);
-    } catch {
-      // The device is full or forbids it. The change is still in memory and is still sent; the status says so.
-      deviceFails = true;
-      tell();
-    }
-  }
-
-  async function forget(updates: readonly Waiting[]): Promise<void> {
-    const ids = new Set(updates.map((update) => update.id));
-    for (let index = queue.length - 1; index >= 0; index--) if (ids.has(queue[index]?.id ?? "")) queue.splice(index, 1);
-    // A record that cannot be removed is sent once more by a later tab, and taken once.
-    await outbox?.remove([...ids]).catch(() => undefined);
-  }
-
-  /** Posts what waits, one after the other and in order, until nothing waits or something is in the way. */
-  async function post(): Promise<void> {
-    if (isPosting || isGone || timers.has("post") || (refusal !== null && refusal.problem.code !== NOT_DRAFT)) return;
-    isPosting = true;
-    try {
-      for (let first = queue[0]; first !== undefined && !isGone; first = queue[0]) {
-        if (!(await postOne(first))) break;
-      }
-    } finally {
-      isPosting = false;
-      tell();
-    }
-  }
-
-  async function postOne(update: Waiting, keepalive = false): Promise<boolean> {
-    let response: Response;
-    try {
-      response = await ask(`${base}/updates`, {
-        method: "POST",
-        headers: { "content-type": "application/octet-stream", "x-update-id": update.id },
-        body: new Blob([new Uint8Array(update.bytes)]),
-        keepalive,
-      });
-    } catch {
-      isUnreachable = true;
-      tryLater(retryMs);
-      return false;
-    }
-    if (response.ok) {
-      await response.body?.cancel();
-      isUnreachable = false;
-      isSignedOut = false;
-      retryMs = FIRST_RETRY_MS;
-      await forget([update]);
-      tell();
-      return true;
-    }
-    return refusedWith(update, await problemOf(response));
-  }
-
-  async function refusedWith(update: Waiting, error: ProblemError): Promise<boolean> {
-    const { status, code, values } = error.problem;
-    if (status === 401) {
-      isSignedOut = true;
-      isUnreachable = false;
-      tryLater(SIGNED_OUT_RETRY_MS);
-      return false;
-    }
-    if (status === 429 || status === 408 || status >= 500) {
-      // Reached, but not now: what waits is "saving" while it is only throttled, "offline" while the server is in trouble.
-      isUnreachable = status !== 429;
-      tryLater(error.retryAfterS === null ? retryMs : error.retryAfterS * 1000);
-      return false;
-    }
-    isUnreachable = false;
-    if (code === "update.invalid" && values?.incomplete === true && !resendAll) {
-      // The server lacks something that this change builds on: all that it lacks is sent in one, from its own account of it.
-      resendAll = true;
-      openStream();
-      return false;
-    }
-    refusal = error;
-    if (code === NOT_DRAFT && values?.kept === true) {
-      // The server keeps it for its writer: the copy here has done its work.
-      await forget([update]);
-      return true;
-    }
-    return false;
-  }
-
-  function tryLater(ms: number): void {
-    retryMs = Math.min(retryMs * 2, LAST_RETRY_MS);
-    later("post", ms, () => void post());
-    tell();
-  }
-
-  function retryNow(): void {
-    cancel("post");
-    retryMs = FIRST_RETRY_MS;
-    if (events === null || events.readyState === 2) openStream();
-    void post();
-  }
-
-  // ---- In: the event stream --------------------------------------------------------------------------------------
+  // ---- In: the event stream ----------------------------------------------------------------------------------------
 
   function openStream(): void {
     cancel("stream");
@@ -260,11 +152,10 @@ export function openProvider(options: ProviderOptions): Provider {
       Y.applyUpdate(doc, fromBase64(whole), RECEIVED);
       isLoaded = true;
       isStreamOpen = true;
-      isUnreachable = false;
-      isSignedOut = false;
-      cancel("post");
+      streamRetryMs = FIRST_RETRY_MS;
+      sender.hear({ isUnreachable: false, isSignedOut: false });
       void upload(fromBase64(vector)).then(takeOver);
-      tell();
+      sendPresence();
     });
     on("update", ({ bytes }) => {
       if (typeof bytes === "string") Y.applyUpdate(doc, fromBase64(bytes), RECEIVED);
@@ -279,37 +170,44 @@ export function openProvider(options: ProviderOptions): Provider {
     on("end", ({ reason }) => {
       opened.close();
       isStreamOpen = false;
-      if (reason === "session") isSignedOut = true;
-      streamLater(reason === "session" || reason === "rights" ? SIGNED_OUT_RETRY_MS : FIRST_RETRY_MS);
+      void lookAtLine(reason === "session");
     });
     opened.addEventListener("error", () => {
       if (events !== opened) return;
       isStreamOpen = false;
-      // 2 is CLOSED: the browser has given up, which it does for any answer but 200.
-      if (opened.readyState === 2) streamLater(retryMs);
+      if (opened.readyState === CLOSED) void lookAtLine(false);
       tell();
     });
   }
 
-  function streamLater(ms: number): void {
-    if (!timers.has("stream")) later("stream", Math.max(ms, FIRST_RETRY_MS), openStream);
-    tell();
+  /** An event stream does not say why it was refused: a plain question does. */
+  async function lookAtLine(hasSessionEnded: boolean): Promise<void> {
+    if (!timers.has("stream")) later("stream", streamRetryMs, openStream);
+    streamRetryMs = Math.min(streamRetryMs * 2, LAST_RETRY_MS);
+    if (hasSessionEnded) sender.hear({ isSignedOut: true, isUnreachable: false });
+    try {
+      const response = await ask(`${base}/stray`, { headers: { accept: "application/json" } });
+      if (response.ok) await response.body?.cancel();
+      else if (response.status === 401) sender.hear({ isSignedOut: true, isUnreachable: false });
+      else if (response.status === 404 || response.status === 403) sender.hear({ refusal: await problemOf(response) });
+    } catch {
+      sender.hear({ isUnreachable: true });
+    }
   }
 
-  /** Sends what the server lacks. What waits in the queue is on its way by itself; only what no queue holds is sent in one piece. */
+  /** Sends what the server lacks. What the queue holds is on its way by itself; only what it does not hold goes in one piece. */
   async function upload(vector: Uint8Array): Promise<void> {
     flush();
     const known = Y.decodeStateVector(vector);
-    const lacks = [...Y.decodeStateVector(Y.encodeStateVector(doc))].some(
-      ([client, clock]) => clock > (known.get(client) ?? 0),
-    );
-    if (resendAll || (queue.length === 0 && lacks)) {
-      const old = [...queue];
-      if (lacks || old.length > 0) enqueue(Y.encodeStateAsUpdate(doc, vector));
-      await forget(old);
+    const ours = Y.decodeStateVector(Y.encodeStateVector(doc));
+    const lacks = [...ours].some(([client, clock]) => clock > (known.get(client) ?? 0));
+    if (resendsAll || (sender.queue.length === 0 && lacks)) {
+      resendsAll = false;
+      const old = [...sender.queue];
+      sender.enqueue(Y.encodeStateAsUpdate(doc, vector));
+      await sender.forget(old);
     }
-    await post();
-    resendAll = false;
+    sender.retryNow();
   }
 
   /** Takes over what tabs of this person that are gone have left on the device. */
@@ -320,25 +218,20 @@ export function openProvider(options: ProviderOptions): Provider {
     for (const other of new Set(left.map((update) => update.tab))) {
       await whenTabIsGone(other, async () => {
         // Read again under the lock: another tab may have taken them meanwhile.
-        const theirs = (await outbox.list()).filter((update) => update.tab === other);
-        for (const update of theirs) {
-          if (queue.some((each) => each.id === update.id)) continue;
-          lastAt = Math.max(update.at, lastAt + 1);
-          const mine: Waiting = { ...update, tab, at: lastAt };
-          queue.push(mine);
-          await outbox.put(mine);
-          Y.applyUpdate(doc, mine.bytes, RECEIVED);
+        for (const update of (await outbox.list()).filter((each) => each.tab === other)) {
+          await sender.adopt(update);
+          Y.applyUpdate(doc, update.bytes, RECEIVED);
         }
       }).catch(() => false);
     }
     tell();
-    void post();
+    void sender.post();
   }
 
   // ---- Presence ----------------------------------------------------------------------------------------------------
 
   awareness.on("update", (_: unknown, origin: unknown) => {
-    if (origin !== RECEIVED && !timers.has("presence")) later("presence", PRESENCE_MS, sendPresence);
+    if (origin !== RECEIVED && !timers.has("presence")) later("presence", PRESENCE_MS, () => sendPresence());
   });
 
   function sendPresence(keepalive = false): void {
@@ -354,24 +247,27 @@ export function openProvider(options: ProviderOptions): Provider {
     }).catch(() => undefined);
   }
 
-  // ---- The page's own life -----------------------------------------------------------------------------------------
-
-  function onHide(): void {
+  function sayGoodbye(): void {
     flush();
-    const first = queue[0];
-    if (first !== undefined && !isPosting && refusal === null && first.bytes.length < KEEPALIVE_BYTES) {
-      void postOne(first, true);
-    }
-  }
-  function onPageHide(): void {
-    onHide();
     removeAwarenessStates(awareness, [doc.clientID], "leaving");
     sendPresence(true);
   }
-  function onVisibility(): void {
+
+  // ---- The browser page's own life ---------------------------------------------------------------------------------
+
+  const onOnline = () => {
+    openStream();
+    sender.retryNow();
+  };
+  const onOffline = () => sender.hear({ isUnreachable: true });
+  const onPageHide = () => {
+    sayGoodbye();
+    sender.postAndGo();
+  };
+  const onVisibility = () => {
     if (document.visibilityState === "hidden") {
-      onHide();
-      // A browser has six connections a server: one that nobody looks at gives its own back.
+      flush();
+      // A browser has six connections a server: a page that nobody looks at gives its own back.
       later("hidden", HIDDEN_MS, () => {
         isPaused = true;
         events?.close();
@@ -381,33 +277,27 @@ export function openProvider(options: ProviderOptions): Provider {
       return;
     }
     cancel("hidden");
-    const wasPaused = isPaused;
-    isPaused = false;
-    if (wasPaused) openStream();
-    retryNow();
-  }
-  const onOnline = () => retryNow();
-  const onOffline = () => {
-    isUnreachable = true;
-    tell();
+    if (isPaused || events?.readyState === CLOSED) {
+      isPaused = false;
+      openStream();
+    }
+    sender.retryNow();
   };
   window.addEventListener("online", onOnline);
   window.addEventListener("offline", onOffline);
   window.addEventListener("pagehide", onPageHide);
   document.addEventListener("visibilitychange", onVisibility);
 
-  function later(name: Parameters<typeof timers.get>[0], ms: number, act: () => void): void {
+  function later(name: TimerName, ms: number, act: () => void): void {
     cancel(name);
     if (isGone) return;
-    timers.set(
-      name,
-      setTimeout(() => {
-        timers.delete(name);
-        act();
-      }, ms),
-    );
+    const timer = setTimeout(() => {
+      timers.delete(name);
+      act();
+    }, ms);
+    timers.set(name, timer);
   }
-  function cancel(name: Parameters<typeof timers.get>[0]): void {
+  function cancel(name: TimerName): void {
     clearTimeout(timers.get(name));
     timers.delete(name);
   }
@@ -417,15 +307,13 @@ export function openProvider(options: ProviderOptions): Provider {
   return {
     doc,
     awareness,
-    retryNow,
+    retryNow: onOnline,
     async discardRefused() {
-      const left = [...queue];
-      await forget(left);
-      refusal = null;
-      tell();
+      await sender.forget([...sender.queue]);
+      sender.hear({ refusal: null });
     },
     destroy() {
-      onPageHide();
+      sayGoodbye();
       isGone = true;
       for (const timer of timers.values()) clearTimeout(timer);
       events?.close();
@@ -433,24 +321,21 @@ export function openProvider(options: ProviderOptions): Provider {
       window.removeEventListener("offline", onOffline);
       window.removeEventListener("pagehide", onPageHide);
       document.removeEventListener("visibilitychange", onVisibility);
+      sender.stop();
       awareness.destroy();
       letGo();
     },
   };
 }
 
-const NOT_DRAFT = "revision.not-draft";
+/** True for a refusal that says that the revision is closed to typing; every other one is about the change itself. */
+export function isClosedToTyping(line: PageLine): boolean {
+  return line.state !== "draft" || line.refusedCode === NOT_DRAFT;
+}
+
+const NOT_KEPT = "This device does not keep changes: leave the page open until they are saved.";
 
 function readMessage(data: unknown): Record<string, unknown> {
   const value: unknown = typeof data === "string" ? JSON.parse(data) : null;
   return typeof value === "object" && value !== null ? { ...value } : {};
 }
-
-/** One of the inks that another person's caret has, always the same for a person. */
-function colourOf(personId: string): string {
-  let sum = 0;
-  for (const letter of personId) sum = (sum * 31 + letter.charCodeAt(0)) % 9973;
-  return CARET_COLOURS[sum % CARET_COLOURS.length] ?? "#3a5a8c";
-}
-
-const CARET_COLOURS = ["#3a5a8c", "#0f6e63", "#8a560d", "#a5322c", "#5c4a7d", "#4f6b2c"] as const;

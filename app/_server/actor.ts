@@ -23,7 +23,7 @@ export async function findActor(asked: Headers, activity: Activity = "touch"): P
     await (await (await auth()).$context).internalAdapter.deleteSession(found.session.token);
     return null;
   }
-  const actor = await actorOf(await database(), found.user.id, found.session.id);
+  const actor = await actorOf(await database(), { personId: found.user.id, sessionId: found.session.id });
   if (actor !== null && activity === "touch" && idleMs > TOUCH_EVERY_MS) {
     await (await (await auth()).$context).internalAdapter.updateSession(found.session.token, { updatedAt: new Date() });
   }

@@ -126,10 +126,9 @@ async function keepRefusal(actor: Actor | null, refused: Refused, what: string, 
   try {
     const db = await database();
     // Somebody who tries a thousand addresses writes thirty events a minute, not a thousand.
-    await takeFrom(db, `refusals:${actor.id}`, 30, 60_000);
+    if (!(await takeFrom(db, `refusals:${actor.id}`, 30, 60_000)).ok) return;
     await recordRefusal(db, actor, { code: refused.code, request: what });
   } catch (error) {
-    if (error instanceof Refused && error.code === "request.too-many") return;
     // The answer is the same with or without the event; that it could not be written is for whoever runs the server.
     log.error({ requestId, error }, "a refusal could not be recorded");
   }

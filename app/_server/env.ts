@@ -21,9 +21,6 @@ export type Settings = {
   proxyHops: number;
   sessionIdleMinutes: number;
   sessionAbsoluteHours: number;
-  lockFailures: number;
-  lockWindowMinutes: number;
-  lockMinutes: number;
 };
 
 export class SettingsRefused extends Error {
@@ -64,9 +61,6 @@ const environment = z
     PROXY_HOPS: whole("PROXY_HOPS", 0, 0, 10),
     COUNTERLEAF_SESSION_IDLE_MINUTES: whole("COUNTERLEAF_SESSION_IDLE_MINUTES", 60, 1, 1440),
     COUNTERLEAF_SESSION_HOURS: whole("COUNTERLEAF_SESSION_HOURS", 12, 1, 168),
-    COUNTERLEAF_LOCK_FAILURES: whole("COUNTERLEAF_LOCK_FAILURES", 5, 2, 100),
-    COUNTERLEAF_LOCK_WINDOW_MINUTES: whole("COUNTERLEAF_LOCK_WINDOW_MINUTES", 15, 1, 1440),
-    COUNTERLEAF_LOCK_MINUTES: whole("COUNTERLEAF_LOCK_MINUTES", 15, 1, 1440),
   })
   .superRefine((given, context) => {
     const say = (message: string) => context.addIssue({ code: "custom", message });
@@ -105,9 +99,6 @@ export function readSettings(source: Record<string, string | undefined>): Settin
     proxyHops: read.PROXY_HOPS,
     sessionIdleMinutes: read.COUNTERLEAF_SESSION_IDLE_MINUTES,
     sessionAbsoluteHours: read.COUNTERLEAF_SESSION_HOURS,
-    lockFailures: read.COUNTERLEAF_LOCK_FAILURES,
-    lockWindowMinutes: read.COUNTERLEAF_LOCK_WINDOW_MINUTES,
-    lockMinutes: read.COUNTERLEAF_LOCK_MINUTES,
   };
 }
 

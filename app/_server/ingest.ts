@@ -3,10 +3,10 @@ import "server-only";
 import { storeAttachment } from "../../db/attachments.ts";
 import { Refused } from "../../db/errors.ts";
 import type { Actor } from "../../db/policy.ts";
-import { takeFrom } from "../../db/rate.ts";
 import type { Asked } from "./answer.ts";
 import { settings } from "./env.ts";
 import { MalformedForm, readFilePart } from "./multipart.ts";
+import { demandRate } from "./rate.ts";
 import { finishUpload, readTicket, type UploadTicket } from "./uploads.ts";
 
 const TRIES_A_LINK = 5;
@@ -16,7 +16,7 @@ const FORM_BYTES = 16_384;
 /** Takes the file that a signed address was given for. The answer is what the SDK's browser half waits for. */
 export async function takeFile(actor: Actor, { request, db }: Pick<Asked, "request" | "db">): Promise<object> {
   const ticket = ticketOf(actor, request);
-  await takeFrom(db, `upload:${ticket.key}`, TRIES_A_LINK, 3_600_000);
+  await demandRate(db, `upload:${ticket.key}`, TRIES_A_LINK, 3_600_000);
   const announced = request.headers.get("content-length");
   if (announced !== null && Number(announced) > ticket.size + FORM_BYTES) throw new Refused("attachment.length-differs", { announced: ticket.size });
   if (request.body === null) throw new Refused("attachment.empty");

@@ -32,6 +32,8 @@ const bell = z.union([
 export type StreamEnd = "session" | "rights" | "slow" | "closing" | "fault";
 
 type Stream = {
+  /** held as long as the stream: when it is collected, its signal never tells that the reader has gone */
+  request: Request;
   revisionId: string;
   actor: Actor;
   lastSeq: number;
@@ -62,11 +64,11 @@ declare global {
  * Opens the event stream of a revision: subscribe and buffer, load the state, send it, send what was buffered, go on. Refuses
  * like a read of the page. Ends by itself when the reader goes, when session or rights end, and when the server closes.
  */
-export async function openStream(actor: Actor, revisionId: string, signal: AbortSignal, asked: Headers): Promise<Response> {
+export async function openStream(actor: Actor, revisionId: string, request: Request): Promise<Response> {
   const { db } = await store();
   const hub = await openHub();
   if (countStreams(hub, actor.id) >= STREAMS_A_PERSON) throw new Refused("request.too-many", { limit: STREAMS_A_PERSON, seconds: 10 });
-  const { stream, body } = makeStream(actor, revisionId, signal, hub, db, asked);
+  const { stream, body } = makeStream(actor, revisionId, request, hub, db);
   try {
     const state = await pageState(db, actor, revisionId);
     stream.lastSeq = state.seq;
@@ -173,10 +175,12 @@ async function readTogether(hub: Hub, db: Db, stream: Stream): ReturnType<typeof
   return read;
 }
 
-function makeStream(actor: Actor, revisionId: string, signal: AbortSignal, hub: Hub, db: Db, asked: Headers) {
+function makeStream(actor: Actor, revisionId: string, request: Request, hub: Hub, db: Db) {
   const encoder = new TextEncoder();
   let controller: ReadableStreamDefaultController<Uint8Array> | null = null;
+  const { signal } = request;
   const stream: Stream = {
+    request,
     revisionId,
     actor,
     lastSeq: -1,
@@ -186,7 +190,7 @@ function makeStream(actor: Actor, revisionId: string, signal: AbortSignal, hub: 
     hasRung: false,
     async recheck() {
       try {
-        const now = await findActor(asked, "none");
+        const now = await findActor(request.headers, "none");
         if (now === null) stream.end("session");
         else stream.actor = now;
       } catch (error) {

@@ -4,7 +4,7 @@
 import "server-only";
 
 export const PASSWORD_LEAST = 12;
-export const PASSWORD_MOST = 128;
+export const PASSWORD_MOST = 256;
 
 export type PasswordFault = "too-short" | "too-long" | "common" | "own-name";
 

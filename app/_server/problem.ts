@@ -54,6 +54,7 @@ const problems = {
   "revision.not-complete": { status: 409, title: "The page is not complete yet", detail: "Fill in what is listed, then sign." },
   "revision.finding-missing": { status: 409, title: "The calculations and files have not been checked for you yet", detail: "Run the check, then countersign." },
   "revision.finding-stale": { status: 409, title: "The check is of an earlier state", detail: "Run it again, then countersign." },
+  "revision.files-differ": { status: 409, title: "A file's bytes do not fit its fingerprint", detail: "Nothing was signed. Tell your administrator: the store has to be looked at." },
   "revision.acknowledgement-missing": { status: 422, title: "A difference needs words", detail: "Write what you make of each difference that the check found." },
   "revision.reason-missing": { status: 422, title: "A reason is needed" },
   "revision.not-derived": { status: 503, title: "The page is still being read", detail: "Try again in a moment." },

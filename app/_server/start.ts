@@ -1,15 +1,13 @@
 // The start of a server process, and its end: open, migrate, seed, listen; and on a signal the same backwards.
 import "server-only";
-import { seedDemo } from "../../db/seed/demo.ts";
 import { store } from "./database.ts";
+import { seedDemoOnce } from "./demo.ts";
 import { settings } from "./env.ts";
 import { startJobs } from "./jobs.ts";
 import { log } from "./log.ts";
 import { onClose, processState } from "./process-state.ts";
-import { hashPassword } from "./secrets.ts";
+import { closeAll } from "./shutdown.ts";
 import { signingSeal } from "./signing-key.ts";
-
-const DRAIN_MS = 5_000;
 
 /** Called by instrumentation before the first request is answered. A start that fails says why in a sentence and ends the process. */
 export async function start(): Promise<void> {
@@ -21,7 +19,7 @@ export async function start(): Promise<void> {
     }
     const { db, kind } = await store();
     endOnSignals();
-    if (set.demo) await seedDemo(db, hashPassword);
+    if (set.demo) await seedDemoOnce(db);
     await signingSeal();
     onClose(startJobs());
     log.info({ store: kind, demo: set.demo, url: set.url }, "open");
@@ -30,23 +28,6 @@ export async function start(): Promise<void> {
     log.fatal({ error }, "could not start");
     await closeAll();
     process.exit(1);
-  }
-}
-
-/** Takes no more, ends the streams, waits for what is being answered, closes the store. */
-export async function closeAll(): Promise<void> {
-  const state = processState();
-  state.closing = true;
-  const closers = state.closers.splice(0).reverse();
-  const until = Date.now() + DRAIN_MS;
-  // The store was opened first, so its closer comes last: by then the streams have ended and nothing is in flight.
-  for (const [index, close] of closers.entries()) {
-    if (index === closers.length - 1) while (state.inFlight > 0 && Date.now() < until) await new Promise((done) => setTimeout(done, 20));
-    try {
-      await close();
-    } catch (error) {
-      log.error({ error }, "something did not close cleanly");
-    }
   }
 }
 

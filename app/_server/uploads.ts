@@ -7,8 +7,10 @@ import "server-only";
 import { createHmac, hkdfSync, timingSafeEqual } from "node:crypto";
 import { createRouteHandler, createUploadthing, UploadThingError, UTFiles } from "uploadthing/server";
 import { z } from "zod";
-import { demandRoom, LARGEST_ATTACHMENT_BYTES, type StoredAttachment } from "../../db/attachments.ts";
+import { LARGEST_FILE_BYTES, type StoredFile } from "../../db/attachments.ts";
 import { Refused } from "../../db/errors.ts";
+import { demand } from "../../db/policy.ts";
+import { findRevision } from "../../db/subjects.ts";
 import { requireActor } from "./actor.ts";
 import { database } from "./database.ts";
 import { settings } from "./env.ts";
@@ -35,9 +37,10 @@ const router = {
         const actor = await requireActor(req.headers);
         const [file] = files;
         if (file === undefined || files.length > 1) throw new Refused("attachment.too-many");
-        if (file.size > LARGEST_ATTACHMENT_BYTES) throw new Refused("attachment.too-large", { limit: LARGEST_ATTACHMENT_BYTES });
+        if (file.size > LARGEST_FILE_BYTES) throw new Refused("attachment.too-large", { limit: LARGEST_FILE_BYTES });
         if (file.size === 0) throw new Refused("attachment.empty");
-        await demandRoom(await database(), actor, input.revisionId);
+        const { revision, actor: now } = await findRevision(await database(), actor, input.revisionId);
+        demand(now, "attachment.store", revision.subject);
         return { [UTFiles]: [{ ...file, customId: `${input.revisionId}.${actor.id}` }], revisionId: input.revisionId };
       } catch (error) {
         throw error instanceof Refused ? spoken(error) : error;
@@ -47,7 +50,7 @@ const router = {
     .onUploadComplete(({ metadata }) => storedShape.parse(metadata)),
 };
 
-const storedShape = z.object({ id: z.string(), name: z.string(), size: z.number(), sha256: z.string(), type: z.string() });
+const storedShape = z.object({ id: z.string(), name: z.string(), size: z.number(), sha256: z.string(), type: z.string().nullable() });
 type Stored = z.infer<typeof storedShape>;
 
 const handlers = new Map<string, (request: Request) => Promise<Response>>();
@@ -98,7 +101,7 @@ export function readTicket(address: string, origins: readonly string[]): UploadT
 }
 
 /** Tells the SDK that the file is here, as the service would, and answers what the browser's upload waits for. */
-export async function finishUpload(origin: string, ticket: UploadTicket, stored: StoredAttachment): Promise<object> {
+export async function finishUpload(origin: string, ticket: UploadTicket, stored: StoredFile): Promise<object> {
   const url = `${origin}/api/attachments/${stored.id}`;
   const file = {
     key: ticket.key,
@@ -144,7 +147,7 @@ const playService: typeof fetch = async (input, init) => {
 /** The SDK's errors carry one sentence: the problem's own. */
 function spoken(refused: Refused): UploadThingError {
   const { title, detail, status } = problemOf(refused.code, "");
-  const code = ({ 401: "FORBIDDEN", 403: "FORBIDDEN", 404: "NOT_FOUND", 413: "TOO_LARGE" } as const)[status] ?? "BAD_REQUEST";
+  const code = status === 404 ? "NOT_FOUND" : status === 413 ? "TOO_LARGE" : status === 401 || status === 403 ? "FORBIDDEN" : "BAD_REQUEST";
   return new UploadThingError({ code, message: detail === undefined ? `${title}.` : `${title}. ${detail}` });
 }
 

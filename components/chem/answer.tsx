@@ -46,10 +46,6 @@ export function Answer({ solved, held, stillSolving, refusals = [], isStatic = f
             <dt>Engine</dt>
             <dd>{solved.engine}</dd>
           </div>
-          <div>
-            <dt>Iterations</dt>
-            <dd>{solved.iterations}</dd>
-          </div>
         </dl>
       </div>
       <p className="ph-from">
@@ -90,7 +86,8 @@ function Fact({ name, unit, value, figures }: { name: string; unit: string; valu
 }
 
 function heldLine(held: boolean, stillSolving: boolean, refusals: number): string {
-  if (refusals > 0) return "The figures in faint ink belong to the last inputs that could be solved, not to those that stand there now.";
+  if (refusals > 0)
+    return "The figures in faint ink belong to the last inputs that could be solved, not to those that stand there now.";
   if (stillSolving) return "Still solving. The figures in faint ink belong to the inputs before.";
   return held ? "Being solved again. The figures in faint ink belong to the inputs before." : "";
 }

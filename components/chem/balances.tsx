@@ -16,15 +16,22 @@ export function Balances({ solved, isStatic = false }: { solved: SolvedBlock; is
   return (
     <div className="balances">
       <BalanceView balance={sum} solved={solved} isOpen={isStatic} isStatic={isStatic} />
+      <p className="note">{enclosureText(solved)}</p>
       {components.length < 2 ? null : (
-        <Unfold summary={`Proton condition, one line for each of the ${components.length} things poured in`} isStatic={isStatic}>
+        <Unfold
+          summary={`Proton condition, one line for each of the ${components.length} things poured in`}
+          isStatic={isStatic}
+        >
           {components.map((balance) => (
             <LineView key={balance.title} balance={balance} />
           ))}
         </Unfold>
       )}
       {solved.massBalances.length === 0 ? null : (
-        <Unfold summary={solved.massBalances.length === 1 ? "Mass balance" : `Mass balances (${solved.massBalances.length})`} isStatic={isStatic}>
+        <Unfold
+          summary={solved.massBalances.length === 1 ? "Mass balance" : `Mass balances (${solved.massBalances.length})`}
+          isStatic={isStatic}
+        >
           {solved.massBalances.map((balance) => (
             <BalanceView key={balance.title} balance={balance} solved={solved} isOpen isStatic={isStatic} />
           ))}
@@ -52,7 +59,17 @@ export function Balances({ solved, isStatic = false }: { solved: SolvedBlock; is
 }
 
 /** One balance: in symbols, in numbers, and term by term. */
-export function BalanceView({ balance, solved, isOpen, isStatic }: { balance: Balance; solved: SolvedBlock; isOpen: boolean; isStatic: boolean }) {
+export function BalanceView({
+  balance,
+  solved,
+  isOpen,
+  isStatic,
+}: {
+  balance: Balance;
+  solved: SolvedBlock;
+  isOpen: boolean;
+  isStatic: boolean;
+}) {
   return (
     <div className="balance">
       <p className="away">{balance.plain}</p>
@@ -79,8 +96,11 @@ export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
         <caption>{caption}</caption>
         <thead>
           <tr>
-            <th scope="col">Term</th>
-            <th scope="col">What happens</th>
+            <th scope="col">
+              <span className="term">
+                <span>Term</span> <span>What happens</span>
+              </span>
+            </th>
             <th scope="col" className="r">
               Left <small>mol/L</small>
             </th>
@@ -94,17 +114,20 @@ export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
             // biome-ignore lint/suspicious/noArrayIndexKey: two rows of the page may give equal terms; their place tells them apart
             <tr key={place}>
               <th scope="row">
-                <Formula tex={term.latex} />
+                <span className="term">
+                  <Formula tex={term.latex} /> <span>{term.reaction}</span>
+                </span>
               </th>
-              <td>{term.reaction}</td>
-              <td className="r">{term.side === "left" ? <ColumnQuantity value={term.value} figures={FIGURES} /> : null}</td>
-              <td className="r">{term.side === "right" ? <ColumnQuantity value={term.value} figures={FIGURES} /> : null}</td>
+              <td className="r">
+                {term.side === "left" ? <ColumnQuantity value={term.value} figures={FIGURES} /> : null}
+              </td>
+              <td className="r">
+                {term.side === "right" ? <ColumnQuantity value={term.value} figures={FIGURES} /> : null}
+              </td>
             </tr>
           ))}
           <tr className="sum">
-            <th scope="row" colSpan={2}>
-              Sum
-            </th>
+            <th scope="row">Sum</th>
             <td className="r">
               <ColumnQuantity value={balance.left} figures={FIGURES} />
             </td>
@@ -113,9 +136,7 @@ export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
             </td>
           </tr>
           <tr className="difference">
-            <th scope="row" colSpan={2}>
-              Difference, left − right
-            </th>
+            <th scope="row">Difference</th>
             <td className="r" colSpan={2}>
               {differenceText(balance)}
             </td>
@@ -124,6 +145,12 @@ export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
       </table>
     </section>
   );
+}
+
+/** Between which ends the root was caught. */
+function enclosureText({ enclosure, pH }: SolvedBlock): string {
+  const half = Math.max(enclosure.highPH - pH, pH - enclosure.lowPH);
+  return `Solved by bracketing: the two sides change places within ${formatNumber(half, 2)} of pH ${fixed(pH, 6)}, beyond their rounding error.`;
 }
 
 /** A difference in words: what cannot be told from zero is not printed as a number. */

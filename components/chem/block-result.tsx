@@ -88,7 +88,17 @@ export function BlockResult({
   );
 }
 
-function Plots({ solved, sweeps, name, isStatic }: { solved: SolvedBlock; sweeps: Sweeps; name: string; isStatic: boolean }) {
+function Plots({
+  solved,
+  sweeps,
+  name,
+  isStatic,
+}: {
+  solved: SolvedBlock;
+  sweeps: Sweeps;
+  name: string;
+  isStatic: boolean;
+}) {
   const residual = residualPlots(sweeps, solved);
   const plot = (model: PlotModel) =>
     isStatic ? <PlotStatic key={model.title} model={model} /> : <PlotFigure key={model.title} model={model} />;

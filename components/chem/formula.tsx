@@ -56,7 +56,8 @@ function setFormula(tex: string, displayMode: boolean): Set {
     return { html };
   } catch (error) {
     // A RangeError is a formula nested too deeply for the stack; both are faults of the formula, told beside its source.
-    if (error instanceof katex.ParseError) return { objection: error.message.replace(/^KaTeX parse error: /, "Cannot be set: ") };
+    if (error instanceof katex.ParseError)
+      return { objection: error.message.replace(/^KaTeX parse error: /, "Cannot be set: ") };
     if (error instanceof RangeError) return { objection: "Cannot be set: it is nested too deeply." };
     throw error;
   }

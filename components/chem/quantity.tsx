@@ -12,7 +12,7 @@ export function Quantity({ value, figures }: { value: number; figures: number })
 
 /** A concentration in a column of concentrations: all as mantissa and power of ten, so that the points align. */
 export function ColumnQuantity({ value, figures }: { value: number; figures: number }) {
-  if (value === 0) return <span className="fig">0{"\u2007".repeat(figures)}      </span>;
+  if (value === 0) return <span className="fig">0{"\u2007".repeat(figures)} </span>;
   const { mantissa, exponent } = scientificParts(value, figures);
   return <PowerOfTen mantissa={mantissa} exponent={exponent} raised={String(exponent).replace("-", "−")} inColumn />;
 }

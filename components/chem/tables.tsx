@@ -1,5 +1,6 @@
 // What a pocket calculator needs, what is in the water, and where each constant comes from.
 
+import type { ReactNode } from "react";
 import type { ConstantUsed, SolvedBlock } from "../../chem/index.ts";
 import { fixed, formatNumber, showDecimal } from "../format.ts";
 import { Formula } from "./formula.tsx";
@@ -10,7 +11,13 @@ import { ColumnQuantity } from "./quantity.tsx";
 /** A, γ of each charge, pKw and the conditional constants at the solution's ionic strength. */
 export function PocketTable({ solved }: { solved: SolvedBlock }) {
   const rows = [
-    { key: "A", name: <Formula tex="A" />, what: "Debye–Hückel factor, L½ mol−½", tabulated: null, used: fixed(solved.activity.A, 5) },
+    {
+      key: "A",
+      name: <Formula tex="A" />,
+      what: "Debye–Hückel factor, L½ mol−½",
+      tabulated: null,
+      used: fixed(solved.activity.A, 5),
+    },
     ...solved.activityCoefficients.map(({ z, gamma }) => ({
       key: `γ${z}`,
       name: <Formula tex={`\\gamma_{${Math.abs(z)}}`} />,
@@ -89,7 +96,9 @@ export function SpeciesTable({ solved }: { solved: SolvedBlock }) {
             <td className="r">
               <ColumnQuantity value={species.concentration} figures={5} />
             </td>
-            <td className="r">{species.fraction === null ? null : <ColumnQuantity value={species.fraction} figures={5} />}</td>
+            <td className="r">
+              {species.fraction === null ? null : <ColumnQuantity value={species.fraction} figures={5} />}
+            </td>
           </tr>
         ))}
       </tbody>
@@ -100,7 +109,7 @@ export function SpeciesTable({ solved }: { solved: SolvedBlock }) {
 /** Every constant as used, with basis, temperature, uncertainty and source (CAL-03). */
 export function ConstantsTable({ constants }: { constants: readonly ConstantUsed[] }) {
   return (
-    <TableRegion caption="Constants used, as their sources give them">
+    <TableRegion caption="Constants used, as their sources give them" isWide>
       <thead>
         <tr>
           <th scope="col">Step</th>
@@ -124,18 +133,29 @@ export function ConstantsTable({ constants }: { constants: readonly ConstantUsed
         {constants.map((constant) => (
           <tr key={constant.id}>
             <th scope="row">
-              {constant.familyName}, {constant.step}
+              {constant.familyName}, step{"\u00a0"}
+              {constant.step}
             </th>
             <td className="r">
               <AtPoint text={showDecimal(constant.pKa)} after={5} />
             </td>
             <td>{basisText(constant)}</td>
             <td className="r mono">{showDecimal(constant.temperatureC)} °C</td>
-            <td className="r">{constant.uncertainty === null ? NOT_EVALUATED : <span className="fig">{showDecimal(constant.uncertainty)}</span>}</td>
+            <td className="r">
+              {constant.uncertainty === null ? (
+                NOT_EVALUATED
+              ) : (
+                <span className="fig">{showDecimal(constant.uncertainty)}</span>
+              )}
+            </td>
             <td>
               {constant.source === "" ? "no source" : constant.source}
-              {constant.fromMemory ? <span className="constant-mark">from memory, not yet compared with its source</span> : null}
-              {constant.nominal ? <span className="constant-mark">a strong step; the number only stands for “complete”</span> : null}
+              {constant.fromMemory ? (
+                <span className="constant-mark">from memory, not yet compared with its source</span>
+              ) : null}
+              {constant.nominal ? (
+                <span className="constant-mark">a strong step; the number only stands for “complete”</span>
+              ) : null}
               {constant.disputed === null ? null : <span className="constant-mark">disputed: {constant.disputed}</span>}
             </td>
           </tr>
@@ -176,8 +196,8 @@ export function CompositionTable({ solved }: { solved: SolvedBlock }) {
 }
 
 function basisText(constant: ConstantUsed): string {
-  if (constant.basis === "thermodynamic") return "thermodynamic, I = 0";
-  return `conditional, I = ${constant.ionicStrength === null ? "not stated" : `${showDecimal(constant.ionicStrength)} mol/L`}`;
+  if (constant.basis === "thermodynamic") return "thermodynamic, I\u00a0=\u00a00";
+  return `conditional, I\u00a0=\u00a0${constant.ionicStrength === null ? "not stated" : `${showDecimal(constant.ionicStrength)}\u00a0mol/L`}`;
 }
 
 /** A number in a right-aligned column that stands on its point; it stays one piece of text, to be read and copied whole. */
@@ -191,11 +211,19 @@ function AtPoint({ text, after }: { text: string; after: number }) {
   );
 }
 
-function TableRegion({ caption, children }: { caption: string; children: React.ReactNode }) {
+function TableRegion({
+  caption,
+  isWide = false,
+  children,
+}: {
+  caption: string;
+  isWide?: boolean;
+  children: ReactNode;
+}) {
   return (
     // biome-ignore lint/a11y/noNoninteractiveTabindex: a region that scrolls sideways has to be reached by keyboard
     <section className="scroll" tabIndex={0} aria-label={`${caption}, scrolls sideways`}>
-      <table>
+      <table className={isWide ? "columns wide" : "columns"}>
         <caption>{caption}</caption>
         {children}
       </table>

@@ -3,8 +3,14 @@
 import type { Warning } from "../../chem/index.ts";
 import { Says, type SaysKind } from "../ui/says.tsx";
 
-const KINDS = { danger: "stop", caution: "warn", info: "info" } as const satisfies Record<Warning["severity"], SaysKind>;
-const WORDS = { danger: "Danger", caution: "Caution", info: "Note" } as const satisfies Record<Warning["severity"], string>;
+const KINDS = { danger: "stop", caution: "warn", info: "info" } as const satisfies Record<
+  Warning["severity"],
+  SaysKind
+>;
+const WORDS = { danger: "Danger", caution: "Caution", info: "Note" } as const satisfies Record<
+  Warning["severity"],
+  string
+>;
 const ORDER = ["danger", "caution", "info"] as const;
 
 /** Warnings of a result, the gravest first. */
@@ -34,7 +40,11 @@ export function MixingCautions({ cautions }: { cautions: readonly MixingCaution[
   }
   const sorted = [...cautions].sort((a, b) => Number(isDanger(b)) - Number(isDanger(a)));
   return sorted.map((caution) => (
-    <Says key={caution.id} kind={isDanger(caution) ? "stop" : "warn"} finding={isDanger(caution) ? "Danger when mixed." : "Caution when mixed."}>
+    <Says
+      key={caution.id}
+      kind={isDanger(caution) ? "stop" : "warn"}
+      finding={isDanger(caution) ? "Danger when mixed." : "Caution when mixed."}
+    >
       {caution.text}{" "}
       <span className="faint">
         {caution.source}

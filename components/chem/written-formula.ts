@@ -23,16 +23,28 @@ const ALLOWED = new Set(
   ].flatMap((line) => line.split(" ")),
 );
 const ALLOWED_SIGNS = new Set([..."\\,;:!%#&_{}$ |>"]);
-const ALLOWED_ENVIRONMENTS = new Set(["aligned", "gathered", "cases", "array", "matrix", "pmatrix", "bmatrix", "vmatrix", "split"]);
+const ALLOWED_ENVIRONMENTS = new Set([
+  "aligned",
+  "gathered",
+  "cases",
+  "array",
+  "matrix",
+  "pmatrix",
+  "bmatrix",
+  "vmatrix",
+  "split",
+]);
 
 /** Says in a sentence why a written formula is not set, or null when nothing speaks against trying. */
 export function formulaObjection(tex: string): string | null {
-  if (tex.length > MOST_CHARACTERS) return `The formula is longer than ${MOST_CHARACTERS} characters. Part it into several.`;
+  if (tex.length > MOST_CHARACTERS)
+    return `The formula is longer than ${MOST_CHARACTERS} characters. Part it into several.`;
   if (depthOf(tex) > DEEPEST) return `The formula nests braces more than ${DEEPEST} deep. Write it flatter.`;
   if (tex.includes("^^")) return "“^^” is not taken in a formula.";
   for (const [, word, sign] of tex.matchAll(/\\(?:([A-Za-z@]+)|([\s\S]?))/g)) {
     if (word !== undefined && !ALLOWED.has(word)) return `The command “\\${word}” is not taken in a formula.`;
-    if (word === undefined && !ALLOWED_SIGNS.has(sign ?? "")) return `The command “\\${sign ?? ""}” is not taken in a formula.`;
+    if (word === undefined && !ALLOWED_SIGNS.has(sign ?? ""))
+      return `The command “\\${sign ?? ""}” is not taken in a formula.`;
   }
   for (const [, environment = ""] of tex.matchAll(/\\(?:begin|end)\s*\{([^{}]*)\}/g)) {
     if (!ALLOWED_ENVIRONMENTS.has(environment)) return `The environment “${environment}” is not taken in a formula.`;

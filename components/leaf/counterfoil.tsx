@@ -64,14 +64,23 @@ export function StubSection({ title, children, joined }: StubSectionProps) {
   );
 }
 
+type VouchProps = {
+  /** What it vouches for: "Calculation E1". Names the group as well, unless `label` does. */
+  title?: string;
+  label?: string;
+  children: ReactNode;
+};
+
 /**
  * What vouches for one row of the page. Put it right before the row that it stands beside: it then starts at the same
  * height beyond the perforation. On a phone and in print it follows in the page.
  */
-export function Vouch({ children, label }: { children: ReactNode; label?: string }) {
+export function Vouch({ title, label = title, children }: VouchProps) {
   return (
-    <aside className="vouch" aria-label={label}>
+    // biome-ignore lint/a11y/useSemanticElements: a landmark inside the page would be one too many, and it is no form group
+    <div className="vouch" role="group" aria-label={label}>
+      {title ? <p className="head">{title}</p> : null}
       {children}
-    </aside>
+    </div>
   );
 }

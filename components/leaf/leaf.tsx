@@ -1,7 +1,10 @@
 // A screen is one leaf with one counterfoil. On a desk screen the counterfoil stands to the right of the perforation and
-// its head sticks; on a phone the head is a row above the leaf and the rest folds under it.
+// its head sticks; on a phone the head is a row above the leaf and the rest folds under it. The page is the document's
+// main part and the counterfoil stands beside it, both landmarks of their own.
 import type { ReactNode } from "react";
 import { classOf } from "../ui/field-parts.tsx";
+
+const LONGEST_UNBROKEN = 16;
 
 type LeafProps = {
   /** `<Counterfoil>`; without it the leaf is one narrow sheet. */
@@ -16,14 +19,10 @@ type LeafProps = {
 
 export function Leaf({ counterfoil, was, print, children, className }: LeafProps) {
   return (
-    <main
-      id="leaf"
-      tabIndex={-1}
-      className={classOf("leaf", !counterfoil && "bare", was === "superseded" && "was", className)}
-    >
+    <div className={classOf("leaf", !counterfoil && "bare", was === "superseded" && "was", className)}>
       {was === "superseded" ? <i className="over" aria-hidden="true" /> : null}
       {counterfoil}
-      <div className="page">
+      <main className="page" id="leaf" tabIndex={-1}>
         {was === "voided" ? (
           <div className="cancel">
             <svg className="stroke" viewBox="0 0 100 100" preserveAspectRatio="none" aria-hidden="true">
@@ -34,9 +33,9 @@ export function Leaf({ counterfoil, was, print, children, className }: LeafProps
         ) : (
           children
         )}
-      </div>
+      </main>
       {print}
-    </main>
+    </div>
   );
 }
 
@@ -53,9 +52,25 @@ type TitleProps = {
 export function LeafTitle({ children, under, setIn, struck }: TitleProps) {
   return (
     <header className={setIn ? "set-in" : undefined}>
-      <h1 className={classOf("title", struck && "struck")}>{children}</h1>
+      <h1 className={classOf("title", struck && "struck")}>
+        {typeof children === "string" ? unbroken(children) : children}
+      </h1>
       {under ? <p className="under-title">{under}</p> : null}
     </header>
+  );
+}
+
+/** A short hyphenated word ("make-up") is not broken at its hyphen; the text itself stays as it was written. */
+function unbroken(title: string): ReactNode {
+  return title.split(/(\s+)/).map((word, place) =>
+    word.includes("-") && word.length <= LONGEST_UNBROKEN ? (
+      // biome-ignore lint/suspicious/noArrayIndexKey: a word is told by its place in the title
+      <span className="nowrap" key={place}>
+        {word}
+      </span>
+    ) : (
+      word
+    ),
   );
 }
 

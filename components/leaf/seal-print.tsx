@@ -48,7 +48,7 @@ type SealedProps = {
   /** Printed name of who signed. */
   name: string;
   /** In words: "author", "witness". */
-  role: string;
+  capacity: string;
   /** Date and time with its zone, ready to be shown. */
   when: string;
   /** The meaning of the signature, word for word. */
@@ -60,13 +60,13 @@ type SealedProps = {
 };
 
 /** Seal, its eight characters, who signed, when, what it means, the full hash, and what decides. */
-export function Sealed({ hash, by, name, role, when, meaning, size = 160, withoutHash, children }: SealedProps) {
+export function Sealed({ hash, by, name, capacity, when, meaning, size = 160, withoutHash, children }: SealedProps) {
   return (
     <div className={`sealed by-${by}`}>
-      <Seal hash={hash} by={by} size={size} title={`Seal of ${name}, ${role}: ${sealWord(hash)}`} />
+      <Seal hash={hash} by={by} size={size} title={`Seal of ${name}, ${capacity}: ${sealWord(hash)}`} />
       <p className="code">{sealWord(hash)}</p>
       <p>
-        <b>{name}</b>, {role}
+        <b>{name}</b>, {capacity}
         <br />
         {when}
         <br />

@@ -11,11 +11,12 @@ type SideRowProps = {
   first?: boolean;
   /** May break over sheets in print. */
   long?: boolean;
+  /** Of its heading; 2 right under the leaf's title, 4 inside a block whose title is a level 3. */
   level?: 2 | 3 | 4;
   id?: string;
 };
 
-export function SideRow({ label, note, children, first, long, level = 3, id }: SideRowProps) {
+export function SideRow({ label, note, children, first, long, level = 2, id }: SideRowProps) {
   const words = (
     <>
       {label}

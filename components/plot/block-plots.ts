@@ -51,21 +51,21 @@ export function residualPlots(sweeps: Sweeps, solved: SolvedBlock): { coarse: Pl
   const pH = fixed(solved.pH, 4);
   const atRoot =
     rootSays === ZERO_WITHIN_ROUNDING
-      ? `${ZERO_WITHIN_ROUNDING} (bound ${formatNumber(solved.residual.bound, 2)} mol/L)`
-      : `${formatNumber(Math.abs(solved.residual.value), 2)} mol/L`;
+      ? `${ZERO_WITHIN_ROUNDING} (bound ${formatNumber(solved.residual.bound, 2)}\u00a0mol/L)`
+      : `${formatNumber(Math.abs(solved.residual.value), 2)}\u00a0mol/L`;
   const coarse = make(
     sweeps.coarse,
     "Coarse sweep",
     aboutSweep(sweeps.coarse),
     3,
-    `The residual |P| of the proton condition against pH: it dips at the root, pH ${pH}, where it is ${atRoot}.`,
+    `The residual |P| of the proton condition against pH: it dips at the root, pH\u00a0${pH}, where it is ${atRoot}.`,
   );
   const refined = make(
     sweeps.refined,
     "Refined sweep",
     aboutSweep(sweeps.refined),
     5,
-    `The same residual close to the root, from pH ${fixed(ends.from, 3)} to ${fixed(ends.to, 3)}: it falls towards pH ${pH} from both sides.`,
+    `The same residual close to the root, from pH\u00a0${fixed(ends.from, 3)} to ${fixed(ends.to, 3)}: it falls towards pH\u00a0${pH} from both sides.`,
   );
   return { coarse: { ...coarse, band: ends }, refined };
 }
@@ -94,7 +94,7 @@ export function fractionsPlots(sweeps: Sweeps, solved: SolvedBlock): PlotModel[]
     return {
       title: `Fractions of ${family.name}`,
       about: aboutSweep(sweep),
-      sentence: `At the root, pH ${fixed(solved.pH, 2)}, ${family.name} is ${listed(shares)}.`,
+      sentence: `At the root, pH\u00a0${fixed(solved.pH, 2)}, ${family.name} is ${listed(shares)}.`,
       note: null,
       x: axisOver("pH", null, range.from, range.to),
       y: axisOver("fraction α", null, 0, 1, 5),
@@ -121,8 +121,10 @@ export function capacityPlot(sweeps: Sweeps, solved: SolvedBlock): PlotModel {
   return {
     title: "Buffer capacity",
     about: aboutSweep(sweep),
-    sentence: `At the root, pH ${fixed(solved.pH, 2)}, the buffer capacity β is ${beta} mol/L for one unit of pH.`,
-    note: leaves ? "where water itself buffers more than the frame holds, the curve is cut off; the table has its values" : null,
+    sentence: `At the root, pH\u00a0${fixed(solved.pH, 2)}, the buffer capacity β is ${beta}\u00a0mol/L for one unit of pH.`,
+    note: leaves
+      ? "where water itself buffers more than the frame holds, the curve is cut off; the table has its values"
+      : null,
     x: axisOver("pH", null, range.from, range.to),
     y: axisOver("β", "(mol/L)", 0, top, 5),
     points,
@@ -177,5 +179,5 @@ function aboutSweep(sweep: Sweep): string {
   const { from, to } = rangeOf(sweep);
   const step = (to - from) / Math.max(1, sweep.pH.length - 1);
   const decimals = step >= 0.05 ? 0 : 3;
-  return `pH ${fixed(from, decimals)} to ${fixed(to, decimals)}, ${sweep.pH.length} points`;
+  return `pH\u00a0${fixed(from, decimals)} to ${fixed(to, decimals)}, ${sweep.pH.length} points`;
 }

@@ -5,7 +5,16 @@ import { fixed } from "../format.ts";
 import { type Layout, MARGIN, TICK } from "./layout.ts";
 import { axisTitle, type PlotModel } from "./model.ts";
 
-export type Inks = { ink: string; faint: string; paper: string; tint: string; grid: string; plot: readonly [string, string, string, string]; mono: string; ui: string };
+export type Inks = {
+  ink: string;
+  faint: string;
+  paper: string;
+  tint: string;
+  grid: string;
+  plot: readonly [string, string, string, string];
+  mono: string;
+  ui: string;
+};
 
 /** Reads the plot's colours and type from the custom properties that hold at an element. */
 export function inksAt(element: Element): Inks {
@@ -17,7 +26,12 @@ export function inksAt(element: Element): Inks {
     paper: of("--paper", "Canvas"),
     tint: of("--tint", "transparent"),
     grid: of("--plot-grid", "GrayText"),
-    plot: [of("--plot-1", "CanvasText"), of("--plot-2", "CanvasText"), of("--plot-3", "CanvasText"), of("--plot-4", "CanvasText")],
+    plot: [
+      of("--plot-1", "CanvasText"),
+      of("--plot-2", "CanvasText"),
+      of("--plot-3", "CanvasText"),
+      of("--plot-4", "CanvasText"),
+    ],
     mono: of("--mono", "monospace"),
     ui: of("--ui", "sans-serif"),
   };
@@ -122,7 +136,15 @@ function drawMarks(context: CanvasRenderingContext2D, model: PlotModel, layout: 
   context.textBaseline = "alphabetic";
   for (const label of layout.labels) {
     context.textAlign = label.anchor === "middle" ? "center" : label.anchor;
-    write(context, label.text, label.x, label.y, `500 13px ${inks.ui}`, label.ink === null ? inks.ink : (inks.plot[label.ink - 1] ?? inks.ink), inks);
+    write(
+      context,
+      label.text,
+      label.x,
+      label.y,
+      `500 13px ${inks.ui}`,
+      label.ink === null ? inks.ink : (inks.plot[label.ink - 1] ?? inks.ink),
+      inks,
+    );
   }
   context.textAlign = "start";
   write(context, axisTitle(model.y), 0, 13, `400 13px ${inks.ui}`, inks.faint, inks);
@@ -131,7 +153,15 @@ function drawMarks(context: CanvasRenderingContext2D, model: PlotModel, layout: 
 }
 
 /** Text with a halo of the paper's colour, so that a line behind it does not cross it out. */
-function write(context: CanvasRenderingContext2D, text: string, x: number, y: number, font: string, colour: string, inks: Inks): void {
+function write(
+  context: CanvasRenderingContext2D,
+  text: string,
+  x: number,
+  y: number,
+  font: string,
+  colour: string,
+  inks: Inks,
+): void {
   context.font = font;
   context.lineJoin = "round";
   context.lineWidth = 4;

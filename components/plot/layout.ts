@@ -2,7 +2,13 @@
 
 import type { Curve, PlotModel } from "./model.ts";
 
-export type Label = { text: string; ink: 1 | 2 | 3 | 4 | null; x: number; y: number; anchor: "start" | "middle" | "end" };
+export type Label = {
+  text: string;
+  ink: 1 | 2 | 3 | 4 | null;
+  x: number;
+  y: number;
+  anchor: "start" | "middle" | "end";
+};
 
 export type Layout = {
   width: number;
@@ -66,7 +72,9 @@ export function segmentsOf(curve: Curve, model: PlotModel, layout: Layout): [num
 
 /** Names stand at their curves, where they cover least: not over a curve, a ring, the root's line or another name. */
 function placeLabels(model: PlotModel, layout: Layout): Label[] {
-  const dots = model.curves.flatMap((curve) => segmentsOf(curve, model, layout).flatMap((segment) => filled(segment)));
+  const dots = model.curves.flatMap((curve) =>
+    segmentsOf(curve, model, layout).flatMap((segment) => filled(spaced(segment))),
+  );
   const rings = model.rings.map((ring): [number, number] => [layout.px(ring.x), layout.py(ring.y)]);
   const placed: Label[] = [];
   const taken: Box[] = [];
@@ -74,7 +82,8 @@ function placeLabels(model: PlotModel, layout: Layout): Label[] {
     let best: { label: Label; box: Box; cost: number } | null = null;
     for (const label of candidates) {
       const box = boxOf(label);
-      const cost = costOf(box, layout, dots, rings, taken, model.root) + Math.hypot(label.x - home[0], label.y - home[1]) / 40;
+      const cost =
+        costOf(box, layout, dots, rings, taken, model.root) + Math.hypot(label.x - home[0], label.y - home[1]) / 40;
       if (best === null || cost < best.cost) best = { label, box, cost };
     }
     if (best === null) return;
@@ -88,13 +97,31 @@ function placeLabels(model: PlotModel, layout: Layout): Label[] {
   }
   for (const curve of model.curves) {
     if (curve.label === null) continue;
-    const points = segmentsOf(curve, model, layout).flat();
-    const highest = points.reduce<[number, number] | null>((top, point) => (top === null || point[1] < top[1] ? point : top), null);
+    const points = spaced(segmentsOf(curve, model, layout).flat());
+    const highest = points.reduce<[number, number] | null>(
+      (top, point) => (top === null || point[1] < top[1] ? point : top),
+      null,
+    );
     if (highest === null) continue;
     const text = curve.label;
-    settle(text, curve.ink, points.flatMap((point) => around(text, curve.ink, point, [8, 14])), middleOfTop(points, highest));
+    settle(
+      text,
+      curve.ink,
+      points.flatMap((point) => around(text, curve.ink, point, [8, 14])),
+      middleOfTop(points, highest),
+    );
   }
   return placed;
+}
+
+/** Leaves out points less than 5 px further on: a dense sweep offers no more places for a name than a coarse one. */
+function spaced(points: [number, number][]): [number, number][] {
+  let last: [number, number] | null = null;
+  return points.filter((point) => {
+    if (last !== null && Math.hypot(point[0] - last[0], point[1] - last[1]) < 5) return false;
+    last = point;
+    return true;
+  });
 }
 
 /** A curve that stays on top for long (a fraction near 1) is named at the middle of that stretch, not at its first point. */
@@ -121,15 +148,23 @@ function boxOf(label: Label): Box {
   return { x0, x1: x0 + width, y0: label.y - LINE + 3, y1: label.y + 3 };
 }
 
-function costOf(box: Box, layout: Layout, dots: [number, number][], rings: [number, number][], taken: Box[], root: number | null): number {
+function costOf(
+  box: Box,
+  layout: Layout,
+  dots: [number, number][],
+  rings: [number, number][],
+  taken: Box[],
+  root: number | null,
+): number {
   const within = ([x, y]: [number, number], space: number) =>
     x > box.x0 - space && x < box.x1 + space && y > box.y0 - space && y < box.y1 + space;
   let cost = 0;
-  if (box.x0 < layout.left + 3 || box.x1 > layout.right + 8 || box.y0 < layout.top - 12 || box.y1 > layout.bottom - 2) cost += 1000;
+  if (box.x0 < layout.left + 3 || box.x1 > layout.right + 8 || box.y0 < layout.top - 12 || box.y1 > layout.bottom - 2)
+    cost += 1000;
   for (const other of taken) {
     if (box.x0 < other.x1 + 6 && box.x1 > other.x0 - 6 && box.y0 < other.y1 + 2 && box.y1 > other.y0 - 2) cost += 500;
   }
-  for (const dot of dots) if (within(dot, 1)) cost += 4;
+  for (const dot of dots) if (within(dot, 3)) cost += 4;
   for (const ring of rings) if (within(ring, 4)) cost += 60;
   if (root !== null && layout.px(root) > box.x0 - 3 && layout.px(root) < box.x1 + 3) cost += 25;
   return cost;

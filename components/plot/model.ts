@@ -68,7 +68,8 @@ export function axisOver(quantity: string, unit: string | null, min: number, max
   const step = niceStep((max - min) / about);
   const decimals = Math.max(0, -Math.floor(Math.log10(step) + 1e-9));
   const ticks: number[] = [];
-  for (let n = Math.ceil(min / step - 1e-9); n * step <= max + step * 1e-9; n += 1) ticks.push(Number((n * step).toFixed(decimals)));
+  for (let n = Math.ceil(min / step - 1e-9); n * step <= max + step * 1e-9; n += 1)
+    ticks.push(Number((n * step).toFixed(decimals)));
   return { quantity, unit, min, max, ticks, decimals };
 }
 
@@ -112,7 +113,7 @@ export function thinned(model: PlotModel, most = 30): number[] {
   const swept = model.points.map((_, index) => index).filter((index) => model.points[index] !== model.root);
   const every = Math.max(1, Math.ceil((swept.length - 1) / most));
   const kept = swept.filter((_, place) => place % every === 0 || place === swept.length - 1);
-  const root = model.points.findIndex((x) => x === model.root);
+  const root = model.root === null ? -1 : model.points.indexOf(model.root);
   return root < 0 ? kept : [...kept, root].sort((a, b) => a - b);
 }
 

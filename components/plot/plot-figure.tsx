@@ -10,7 +10,8 @@ import { PlotSvg } from "./svg.tsx";
 
 export const PLOT_HEIGHT = 270;
 const PLOT_WIDTH = 430;
-const PAGE = 10;
+/** Page Up and Page Down cross the plot in so many steps. */
+const PAGES = 16;
 
 /**
  * A plot to be read: drawn for its width, with a reading point that pointer, finger and keyboard move. Before the script
@@ -22,6 +23,7 @@ export function PlotFigure({ model }: { model: PlotModel }) {
   const sentenceId = useId();
   const width = useWidth(box);
   const theme = useTheme();
+  const drawing = useRef<(() => void) | null>(null);
   const [isDrawn, setDrawn] = useState(false);
   const [asked, setAsked] = useState<number | null>(null);
   const layout = useMemo(() => layoutOf(model, width ?? PLOT_WIDTH, PLOT_HEIGHT), [model, width]);
@@ -30,18 +32,28 @@ export function PlotFigure({ model }: { model: PlotModel }) {
   useEffect(() => {
     const element = host.current;
     if (element === null || width === null || typeof Path2D === "undefined") return;
-    let remove: (() => void) | null = null;
     let isGone = false;
     import("./canvas.ts").then(({ drawPlot, inksAt }) => {
       if (isGone) return;
-      remove = drawPlot(element, model, layout, inksAt(element));
+      // The old drawing goes when the new one stands, so that nothing flickers.
+      const before = drawing.current;
+      drawing.current = drawPlot(element, model, layout, inksAt(element));
+      before?.();
       setDrawn(true);
     });
     return () => {
       isGone = true;
-      remove?.();
     };
   }, [model, layout, width, theme]);
+
+  useEffect(
+    () => () => {
+      drawing.current?.();
+      drawing.current = null;
+      setDrawn(false);
+    },
+    [],
+  );
 
   const last = model.points.length - 1;
   const index = asked === null ? null : Math.min(asked, last);
@@ -82,17 +94,33 @@ export function PlotFigure({ model }: { model: PlotModel }) {
         {index === null || width === null ? null : <ReadingPoint model={model} index={index} layout={layout} />}
       </div>
       <p className="plot-read" aria-live="polite">
-        {index === null ? "Point at the plot, or focus it and use the arrow keys, to read values." : readingAt(model, index)}
+        {index === null
+          ? "Point at the plot, or focus it and use the arrow keys, to read values."
+          : readingAt(model, index)}
       </p>
       <PlotValues model={model} />
     </figure>
   );
 }
 
-function ReadingPoint({ model, index, layout }: { model: PlotModel; index: number; layout: ReturnType<typeof layoutOf> }) {
+function ReadingPoint({
+  model,
+  index,
+  layout,
+}: {
+  model: PlotModel;
+  index: number;
+  layout: ReturnType<typeof layoutOf>;
+}) {
   const x = layout.px(model.points[index] ?? model.x.min);
   return (
-    <svg className="plot-reading" width={layout.width} height={layout.height} viewBox={`0 0 ${layout.width} ${layout.height}`} aria-hidden="true">
+    <svg
+      className="plot-reading"
+      width={layout.width}
+      height={layout.height}
+      viewBox={`0 0 ${layout.width} ${layout.height}`}
+      aria-hidden="true"
+    >
       <path className="plot-reading-line" d={`M${x} ${layout.top}V${layout.bottom}`} />
       {model.curves.map((curve) => {
         const y = curve.y[index];
@@ -104,6 +132,7 @@ function ReadingPoint({ model, index, layout }: { model: PlotModel; index: numbe
 }
 
 function nextPoint(key: string, at: number, last: number): number | null {
+  const page = Math.max(2, Math.round(last / PAGES));
   const within = (index: number) => Math.max(0, Math.min(last, index));
   switch (key) {
     case "ArrowRight":
@@ -113,9 +142,9 @@ function nextPoint(key: string, at: number, last: number): number | null {
     case "ArrowDown":
       return within(at - 1);
     case "PageUp":
-      return within(at + PAGE);
+      return within(at + page);
     case "PageDown":
-      return within(at - PAGE);
+      return within(at - page);
     case "Home":
       return 0;
     case "End":

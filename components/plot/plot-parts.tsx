@@ -10,7 +10,9 @@ export function PlotCaption({ model, id }: { model: PlotModel; id?: string }) {
       <span className="plot-sentence" id={id}>
         {model.sentence}
       </span>
-      {model.note === null ? null : <span className="plot-note">{`${model.note.charAt(0).toUpperCase()}${model.note.slice(1)}.`}</span>}
+      {model.note === null ? null : (
+        <span className="plot-note">{`${model.note.charAt(0).toUpperCase()}${model.note.slice(1)}.`}</span>
+      )}
     </figcaption>
   );
 }
@@ -25,7 +27,8 @@ export function PlotValues({ model }: { model: PlotModel }) {
       <section className="scroll" aria-label={`Values: ${model.title}`} tabIndex={0}>
         <table>
           <caption>
-            {model.title}: {rows.length} of {model.points.length} points{rows.length < model.points.length ? "; the sweep as CSV holds every one" : ""}
+            {model.title}: {rows.length} of {model.points.length} points
+            {rows.length < model.points.length ? "; the sweep as CSV holds every one" : ""}
           </caption>
           <thead>
             <tr>

@@ -1,12 +1,43 @@
 // Plots are drawn as text on a canvas or in an SVG, where KaTeX cannot go: a species' LaTeX as plain characters.
 
 const LOWERED: Readonly<Record<string, string>> = {
-  "0": "₀", "1": "₁", "2": "₂", "3": "₃", "4": "₄", "5": "₅", "6": "₆", "7": "₇", "8": "₈", "9": "₉", "+": "₊", "-": "₋",
+  "0": "₀",
+  "1": "₁",
+  "2": "₂",
+  "3": "₃",
+  "4": "₄",
+  "5": "₅",
+  "6": "₆",
+  "7": "₇",
+  "8": "₈",
+  "9": "₉",
+  "+": "₊",
+  "-": "₋",
 };
 const RAISED: Readonly<Record<string, string>> = {
-  "0": "⁰", "1": "¹", "2": "²", "3": "³", "4": "⁴", "5": "⁵", "6": "⁶", "7": "⁷", "8": "⁸", "9": "⁹", "+": "⁺", "-": "⁻", "−": "⁻",
+  "0": "⁰",
+  "1": "¹",
+  "2": "²",
+  "3": "³",
+  "4": "⁴",
+  "5": "⁵",
+  "6": "⁶",
+  "7": "⁷",
+  "8": "⁸",
+  "9": "⁹",
+  "+": "⁺",
+  "-": "⁻",
+  "−": "⁻",
 };
-const SYMBOLS: Readonly<Record<string, string>> = { "\\alpha": "α", "\\cdot": "·", "\\beta": "β", "\\gamma": "γ", "\\,": "", "\\;": " ", "\\!": "" };
+const SYMBOLS: Readonly<Record<string, string>> = {
+  "\\alpha": "α",
+  "\\cdot": "·",
+  "\\beta": "β",
+  "\\gamma": "γ",
+  "\\,": "",
+  "\\;": " ",
+  "\\!": "",
+};
 
 /** Turns the LaTeX of a species into plain characters; what cannot be said so gives the name instead. */
 export function speciesText(latex: string, name: string): string {

@@ -9,7 +9,13 @@ export function PlotSvg({ model, width = 430, height = 270 }: { model: PlotModel
   return (
     <svg className="plot-svg" viewBox={`0 0 ${width} ${height}`} role="img" aria-label={model.sentence}>
       {model.band === null ? null : (
-        <rect className="plot-band" x={round(px(model.band.from) - 2)} y={top} width={round(px(model.band.to) - px(model.band.from) + 4)} height={bottom - top} />
+        <rect
+          className="plot-band"
+          x={round(px(model.band.from) - 2)}
+          y={top}
+          width={round(px(model.band.to) - px(model.band.from) + 4)}
+          height={bottom - top}
+        />
       )}
       {model.y.ticks.map((tick) => (
         <path key={tick} className="plot-grid" d={`M${left} ${round(py(tick))}H${right}`} />

@@ -7,7 +7,10 @@ import type { Sweep } from "../../chem/index.ts";
  */
 export function sweepCsv(sweep: Sweep): string {
   const forms = sweep.fractions.flatMap((family) =>
-    family.values.map((values, lost) => ({ head: `alpha (${family.name}: ${family.forms[lost] ?? lost}) / 1`, values })),
+    family.values.map((values, lost) => ({
+      head: `alpha (${family.name}: ${family.forms[lost] ?? lost}) / 1`,
+      values,
+    })),
   );
   const head = [
     "pH / 1",

@@ -10,7 +10,11 @@ export function SweepDownload({ sweeps, name }: { sweeps: Sweeps; name: string }
       <button type="button" className="quiet" onClick={() => save(sweepCsv(sweeps.coarse), `${name}-coarse-sweep.csv`)}>
         Coarse sweep as CSV
       </button>
-      <button type="button" className="quiet" onClick={() => save(sweepCsv(sweeps.refined), `${name}-refined-sweep.csv`)}>
+      <button
+        type="button"
+        className="quiet"
+        onClick={() => save(sweepCsv(sweeps.refined), `${name}-refined-sweep.csv`)}
+      >
         Refined sweep as CSV
       </button>
     </p>

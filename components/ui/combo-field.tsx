@@ -1,7 +1,7 @@
 "use client";
 // One of many, looked up while typing. The caller searches (`onInput`) and hands in what was found; nothing is filtered
 // here a second time. An item is shown in columns; the list opens over the page and nothing under it moves.
-import { type ReactNode, type Ref, useId } from "react";
+import { type ReactNode, type Ref, useId, useState } from "react";
 import { ComboBox, Input, Label, ListBox, ListBoxItem, Popover } from "react-aria-components";
 import { classOf, FieldError } from "./field-parts.tsx";
 
@@ -66,6 +66,9 @@ export function ComboField({
   ref,
 }: ComboFieldProps) {
   const id = useId();
+  // Leaving or Escape brings the chosen item's text back, also when the item is no longer among those found.
+  const [chosen, setChosen] = useState({ value, text: value === "" ? "" : input });
+  if (chosen.value !== value) setChosen({ value, text: value === "" ? "" : input });
   const described = classOf(error ? `${id}-error` : "", hint ? `${id}-hint` : "") || undefined;
   return (
     <ComboBox
@@ -76,7 +79,12 @@ export function ComboField({
       value={value === "" ? null : value}
       onChange={(key) => {
         const picked = items.find((item) => item.id === key);
-        if (picked) onPick(picked);
+        if (picked && picked.id !== value) {
+          setChosen({ value: picked.id, text: picked.text });
+          onPick(picked);
+        } else if (!allowsOwnText) {
+          onInput(chosen.text);
+        }
       }}
       onBlur={onBlur}
       allowsEmptyCollection

@@ -28,8 +28,6 @@ it("takes what a real installation needs and fills in the rest", () => {
     databaseUrl: "file:/srv/counterleaf/store",
     smtpUrl: null,
     proxyHops: 0,
-    lockFailures: 5,
-    lockWindowMinutes: 15,
   });
 });
 
@@ -45,7 +43,6 @@ it.each([
   ["two stores", { DATABASE_URL: "postgres://localhost/lab" }, "both set"],
   ["mail without a sender", { SMTP_URL: "smtp://localhost" }, "MAIL_FROM"],
   ["a negative number of proxies", { PROXY_HOPS: "-1" }, "PROXY_HOPS"],
-  ["a lock after one failure", { COUNTERLEAF_LOCK_FAILURES: "1" }, "COUNTERLEAF_LOCK_FAILURES"],
   ["a session without end", { COUNTERLEAF_SESSION_HOURS: "1e9" }, "COUNTERLEAF_SESSION_HOURS"],
 ])("refuses %s", (_, change, named) => {
   expect(faults({ ...real, ...change }).join("\n")).toContain(named);

@@ -22,7 +22,14 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
   const pH = (low + high) / 2;
   const { H, OH, alpha } = stateAt(pH);
   const a = (lost: number) => alpha[lost] ?? 0;
-  const term = (side: "left" | "right", coefficient: number, latex: string, value: number, reference: string, reaction: string): Term => ({
+  const term = (
+    side: "left" | "right",
+    coefficient: number,
+    latex: string,
+    value: number,
+    reference: string,
+    reaction: string,
+  ): Term => ({
     side,
     coefficient,
     latex,
@@ -43,7 +50,11 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
   ];
   const sum = balance("proton-condition", "Proton condition, counted from what was poured in", terms);
   const component = (reference: string, title: string) =>
-    balance("proton-condition-component", title, terms.filter((each) => each.reference === reference));
+    balance(
+      "proton-condition-component",
+      title,
+      terms.filter((each) => each.reference === reference),
+    );
   const I = 0.5 * (H + OH + 2 * C2 + (C1 + C2) * (a(1) + 4 * a(2) + 9 * a(3)));
   const solved: SolvedBlock = {
     engine: "0.1.0",
@@ -52,7 +63,13 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
     OH,
     ionicStrength: I,
     beta: betaAt(pH),
-    activity: { model: "ideal", label: "Ideal", rangeText: "only at vanishing ionic strength", A: 0.5103, maxIonicStrength: 0.001 },
+    activity: {
+      model: "ideal",
+      label: "Ideal",
+      rangeText: "only at vanishing ionic strength",
+      A: 0.5103,
+      maxIonicStrength: 0.001,
+    },
     activityCoefficients: [
       { z: 0, gamma: 1 },
       { z: 1, gamma: 1 },
@@ -68,12 +85,51 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
       { row: "r2", name: "disodium hydrogen citrate sesquihydrate", formula: "Na2HC6H5O7·1.5H2O", concentration: C2 },
     ],
     species: [
-      { family: "water", name: "hydrogen ion", latex: "\\mathrm{H^{+}}", z: 1, lost: null, concentration: H, fraction: null },
-      { family: "water", name: "hydroxide ion", latex: "\\mathrm{OH^{-}}", z: -1, lost: null, concentration: OH, fraction: null },
-      ...NAMES.map((name, lost) => ({ family: "citric", name, latex: LATEX[lost] ?? "", z: -lost, lost, concentration: (C1 + C2) * a(lost), fraction: a(lost) })),
-      { family: "ion", name: "sodium ion", latex: "\\mathrm{Na^{+}}", z: 1, lost: null, concentration: 2 * C2, fraction: null },
+      {
+        family: "water",
+        name: "hydrogen ion",
+        latex: "\\mathrm{H^{+}}",
+        z: 1,
+        lost: null,
+        concentration: H,
+        fraction: null,
+      },
+      {
+        family: "water",
+        name: "hydroxide ion",
+        latex: "\\mathrm{OH^{-}}",
+        z: -1,
+        lost: null,
+        concentration: OH,
+        fraction: null,
+      },
+      ...NAMES.map((name, lost) => ({
+        family: "citric",
+        name,
+        latex: LATEX[lost] ?? "",
+        z: -lost,
+        lost,
+        concentration: (C1 + C2) * a(lost),
+        fraction: a(lost),
+      })),
+      {
+        family: "ion",
+        name: "sodium ion",
+        latex: "\\mathrm{Na^{+}}",
+        z: 1,
+        lost: null,
+        concentration: 2 * C2,
+        fraction: null,
+      },
     ],
-    protonCondition: { components: [component("water", "water"), component("r1", "citric acid"), component("r2", "disodium hydrogen citrate")], sum },
+    protonCondition: {
+      components: [
+        component("water", "water"),
+        component("r1", "citric acid"),
+        component("r2", "disodium hydrogen citrate"),
+      ],
+      sum,
+    },
     massBalances: [
       balance("mass", "Mass balance, citric acid", [
         term("left", 1, "c_{1}", C1, "r1", "citric acid poured in"),
@@ -85,7 +141,9 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
       term("left", 1, "[\\mathrm{H^{+}}]", H, "water", "hydrogen ion"),
       term("left", 1, "[\\mathrm{Na^{+}}]", 2 * C2, "r2", "sodium ion"),
       term("right", 1, "[\\mathrm{OH^{-}}]", OH, "water", "hydroxide ion"),
-      ...[1, 2, 3].map((z) => term("right", z, `${z === 1 ? "" : z}[${LATEX[z] ?? ""}]`, z * (C1 + C2) * a(z), "", NAMES[z] ?? "")),
+      ...[1, 2, 3].map((z) =>
+        term("right", z, `${z === 1 ? "" : z}[${LATEX[z] ?? ""}]`, z * (C1 + C2) * a(z), "", NAMES[z] ?? ""),
+      ),
     ]),
     fractions: [
       {
@@ -102,7 +160,12 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
         values: [...alpha],
       },
     ],
-    activityDefinitions: [{ latex: "K_{i}=K_{i}^{\\circ}\\frac{\\gamma_{i-1}}{\\gamma_{1}\\gamma_{i}}", plain: "The conditional constant is the thermodynamic one times a ratio of activity coefficients." }],
+    activityDefinitions: [
+      {
+        latex: "K_{i}=K_{i}^{\\circ}\\frac{\\gamma_{i-1}}{\\gamma_{1}\\gamma_{i}}",
+        plain: "The conditional constant is the thermodynamic one times a ratio of activity coefficients.",
+      },
+    ],
     constants: PKA.map((pKa, index) => ({
       id: `citric.${index + 1}.v1`,
       pKa: String(pKa),
@@ -128,7 +191,12 @@ export function citrateBlock(): { solved: SolvedBlock; sweeps: Sweeps } {
 function stateAt(pH: number) {
   const H = 10 ** -pH;
   const K = PKA.map((pKa) => 10 ** -pKa);
-  const weights = [H ** 3, (K[0] ?? 0) * H ** 2, (K[0] ?? 0) * (K[1] ?? 0) * H, (K[0] ?? 0) * (K[1] ?? 0) * (K[2] ?? 0)];
+  const weights = [
+    H ** 3,
+    (K[0] ?? 0) * H ** 2,
+    (K[0] ?? 0) * (K[1] ?? 0) * H,
+    (K[0] ?? 0) * (K[1] ?? 0) * (K[2] ?? 0),
+  ];
   const total = weights.reduce((sum, weight) => sum + weight, 0);
   return { H, OH: 10 ** (pH - PKW), alpha: weights.map((weight) => weight / total) };
 }
@@ -158,7 +226,15 @@ function sweep(from: number, step: number, count: number): Sweep {
     logResidual: pH.map((at) => Math.log10(Math.abs(residualAt(at)))),
     left: pH.map((at) => sidesAt(at).left),
     right: pH.map((at) => sidesAt(at).right),
-    fractions: [{ family: "citric", name: "citric acid", forms: [...NAMES], latex: [...LATEX], values: NAMES.map((_, lost) => pH.map((at) => stateAt(at).alpha[lost] ?? 0)) }],
+    fractions: [
+      {
+        family: "citric",
+        name: "citric acid",
+        forms: [...NAMES],
+        latex: [...LATEX],
+        values: NAMES.map((_, lost) => pH.map((at) => stateAt(at).alpha[lost] ?? 0)),
+      },
+    ],
     beta: pH.map(betaAt),
     H: pH.map((at) => stateAt(at).H),
     OH: pH.map((at) => stateAt(at).OH),
@@ -169,7 +245,8 @@ function balance(kind: Balance["kind"], title: string, terms: Term[]): Balance {
   const of = (side: "left" | "right") => terms.filter((term) => term.side === side);
   const total = (side: "left" | "right") => of(side).reduce((sum, term) => sum + term.value, 0);
   const written = (side: "left" | "right", text: (term: Term) => string) => of(side).map(text).join(" + ") || "0";
-  const number = (term: Term) => term.value.toExponential(4).replace(/e([+-]\d+)/, (_, power) => `\\times 10^{${Number(power)}}`);
+  const number = (term: Term) =>
+    term.value.toExponential(4).replace(/e([+-]\d+)/, (_, power) => `\\times 10^{${Number(power)}}`);
   return {
     kind,
     title,
@@ -180,6 +257,10 @@ function balance(kind: Balance["kind"], title: string, terms: Term[]): Balance {
     roundingBound: 3e-17,
     latex: `${written("left", (term) => term.latex)} = ${written("right", (term) => term.latex)}`,
     latexNumbers: `${written("left", number)} = ${written("right", number)}`,
-    plain: `${title}. Left: ${of("left").map((term) => term.plain).join("; ")}. Right: ${of("right").map((term) => term.plain).join("; ")}.`,
+    plain: `${title}. Left: ${of("left")
+      .map((term) => term.plain)
+      .join("; ")}. Right: ${of("right")
+      .map((term) => term.plain)
+      .join("; ")}.`,
   };
 }

@@ -6,6 +6,6 @@ export const dynamic = "force-dynamic";
 
 // An open page alone does not keep a session awake.
 export const GET = route(
-  async (actor, { request, params }) => openStream(actor, pathId(params, "revision.not-found"), request.signal, request.headers),
+  async (actor, { request, params }) => openStream(actor, pathId(params, "entry.not-found"), request),
   "none",
 );

@@ -3,5 +3,5 @@ import { route } from "../../../../_server/answer.ts";
 import { pathId } from "../../../../_server/request.ts";
 
 export const GET = route(async (actor, { params, db }) => ({
-  updates: await strayUpdates(db, actor, pathId(params, "revision.not-found")),
+  updates: await strayUpdates(db, actor, pathId(params, "entry.not-found")),
 }));

@@ -5,7 +5,7 @@ import { UPDATE_LIMIT_BYTES, updateId } from "./schema.ts";
 
 export const POST = route(async (actor, { request, params, db }) =>
   appendUpdate(db, actor, {
-    revisionId: pathId(params, "revision.not-found"),
+    revisionId: pathId(params, "entry.not-found"),
     updateId: parse(updateId, request.headers.get("x-update-id")),
     bytes: await readOctets(request, UPDATE_LIMIT_BYTES),
   }),

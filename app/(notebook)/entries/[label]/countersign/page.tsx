@@ -1,0 +1,61 @@
+import type { Metadata } from "next";
+import { redirect } from "next/navigation";
+import { readEntry } from "../../../../../db/entries.ts";
+import { MEANINGS } from "../../../../../db/manifest.ts";
+import { StaticPage } from "../../../../../editor/read/static-page.tsx";
+import { Notice } from "../../../../../components/ui/says.tsx";
+import { readForPage } from "../../../../_server/page-read.ts";
+import { Countersign } from "../../_components/countersign.tsx";
+import { frozenContent } from "../../_page/frozen.ts";
+import { check, countersignNow, giveBack, open, readToTheEnd } from "../../_page/signing-actions.ts";
+import { DaysSection, FilesSection, PeopleSections, RevisionsSection, SealsSection } from "../../_page/stub.tsx";
+
+type Props = { params: Promise<{ label: string }> };
+
+export async function generateMetadata({ params }: Props): Promise<Metadata> {
+  return { title: `Countersign ${(await params).label}` };
+}
+
+/** The signed revision as its author signed it, for a witness who decides. */
+export default async function CountersignPage({ params }: Props) {
+  const { label } = await params;
+  const { actor, read: entry } = await readForPage((person, db) => readEntry(db, person, label));
+  const { signed, may } = entry;
+  if (signed === null || !may.countersign) redirect(`/entries/${label}`);
+  const { content, sha256 } = signed;
+  return (
+    <Countersign
+      label={label}
+      of={`${entry.notebook.title}, revision ${entry.revision.number}`}
+      revisionId={entry.revision.id}
+      hash={sha256}
+      author={entry.author.printedName}
+      meaning={MEANINGS.witness}
+      signer={{ name: actor.printedName, email: actor.email }}
+      counts={{ blocks: content.blocks.length, files: content.attachments.length }}
+      decimalSign={actor.decimalSign}
+      open={open}
+      readToTheEnd={readToTheEnd}
+      check={check}
+      countersign={countersignNow}
+      giveBack={giveBack}
+      page={
+        <>
+          <Notice kind="info" finding={`You are reading revision ${entry.revision.number} exactly as ${entry.author.printedName} signed it.`}>
+            It cannot be typed in any more.
+          </Notice>
+          <StaticPage {...frozenContent(content)} timeZone={actor.timeZone} decimalSign={actor.decimalSign} />
+        </>
+      }
+      sections={
+        <>
+          <SealsSection entry={entry} timeZone={actor.timeZone} />
+          <PeopleSections entry={entry} />
+          <DaysSection entry={entry} timeZone={actor.timeZone} />
+          <FilesSection files={content.attachments} />
+          <RevisionsSection entry={entry} timeZone={actor.timeZone} />
+        </>
+      }
+    />
+  );
+}

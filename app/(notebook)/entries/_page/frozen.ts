@@ -1,0 +1,47 @@
+// What the static page draws: from signed content its own bytes, from a draft what its blocks are answered now.
+import { type Sweeps, sweepBlock } from "../../../../chem/index.ts";
+import type { Db } from "../../../../db/client.ts";
+import { attachmentsOf, type ContentBlock, type SignedContent } from "../../../../db/content.ts";
+import { namesOf } from "../../../../db/compounds.ts";
+import type { Actor } from "../../../../db/policy.ts";
+import { type BlockAnswer, resultFor } from "../../../../db/results.ts";
+import { pageState } from "../../../../db/updates.ts";
+import { derivePage, openState, type EquilibriumBlock, type PageHead, type PageJson } from "../../../../editor/schema/index.ts";
+
+export type FrozenBlock = {
+  block: EquilibriumBlock;
+  answer: Pick<BlockAnswer, "key" | "engine" | "outcome"> & Pick<ContentBlock, "cautions" | "hazards"> & { sweeps: Sweeps | null };
+};
+export type Frozen = {
+  page: PageJson;
+  head: PageHead;
+  names: Record<string, string>;
+  blocks: Record<string, FrozenBlock>;
+  attachments: SignedContent["attachments"];
+};
+
+/** Signed content as it was signed. Its answers are the pinned ones; only the curves are drawn anew from the pinned inputs. */
+export function frozenContent(content: SignedContent): Frozen {
+  const blocks = content.blocks.map(({ id, inputs, canonical, key, engine, outcome, cautions, hazards }) => {
+    const sweeps = canonical !== null && outcome.ok ? sweepBlock(canonical, outcome.value) : null;
+    return [id, { block: inputs, answer: { key, engine, outcome, cautions, hazards, sweeps } }] as const;
+  });
+  const { document: page, head, names, attachments } = content;
+  return { page, head, names, attachments, blocks: Object.fromEntries(blocks) };
+}
+
+/** A draft as it stands, for somebody who reads it and does not write: not bound, so reading changes nothing. */
+export async function frozenDraft(db: Db, actor: Actor, revisionId: string): Promise<Frozen> {
+  const { state } = await pageState(db, actor, revisionId);
+  const doc = openState(state);
+  const bare = derivePage(doc, (id) => id);
+  doc.destroy();
+  const names = await namesOf(db, [...new Set(bare.mentions.map(({ compound }) => compound))]);
+  const blocks: [string, FrozenBlock][] = [];
+  for (const block of bare.blocks) {
+    const { input, key, engine, outcome, cautions, hazards } = await resultFor(db, actor, { revisionId, block });
+    const sweeps = input !== null && outcome.ok ? sweepBlock(input, outcome.value) : null;
+    blocks.push([block.id, { block, answer: { key, engine, outcome, cautions, hazards, sweeps } }]);
+  }
+  return { page: bare.page, head: bare.head, names, blocks: Object.fromEntries(blocks), attachments: await attachmentsOf(db, revisionId) };
+}

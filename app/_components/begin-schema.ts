@@ -1,0 +1,3 @@
+import { z } from "zod";
+
+export const beginInput = z.strictObject({ notebookId: z.uuid() });

@@ -1,0 +1,6 @@
+import { z } from "zod";
+
+export const signInInput = z.strictObject({
+  email: z.string().trim().min(1, { error: "Give your e-mail." }).max(254, { error: "At most 254 characters." }),
+  password: z.string().min(1, { error: "Give your password." }).max(256, { error: "At most 256 characters." }),
+});

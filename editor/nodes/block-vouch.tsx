@@ -1,0 +1,61 @@
+"use client";
+// What vouches for a block, on the counterfoil beside it: how it stands, the key of its inputs, every solve that was kept (CAL-04).
+import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { formatDateTime, formatPh } from "../../components/format.ts";
+import { Fingerprint } from "../../components/leaf/fingerprint.tsx";
+import { StateMark } from "../../components/leaf/state-mark.tsx";
+import { keptSolvesQuery } from "../../components/query/results.ts";
+import { usePage } from "../page-context.tsx";
+import type { EquilibriumBlock } from "../schema/index.ts";
+import type { Answer } from "./answer.ts";
+
+export function BlockVouch({ block, number, answer }: { block: EquilibriumBlock; number: number; answer: Answer }) {
+  return (
+    <aside className="vouch" aria-label={`What vouches for E${number}`}>
+      <h3>Calculation E{number}</h3>
+      <p>
+        {answer.shown === null ? (
+          <StateMark state="waiting">Not solved</StateMark>
+        ) : answer.isHeld ? (
+          <StateMark state="waiting">Held: of earlier inputs</StateMark>
+        ) : (
+          <StateMark state="reproduces">Solved, engine {answer.engine}</StateMark>
+        )}
+      </p>
+      {answer.key === null ? null : (
+        <>
+          <h3>Key of the inputs{answer.isHeld ? ", earlier" : ""}</h3>
+          <Fingerprint hex={answer.key} label="Key of the inputs" />
+          <p className="note">The result is pinned when the page is signed.</p>
+        </>
+      )}
+      <KeptSolves blockId={block.id} shownKey={answer.key} />
+    </aside>
+  );
+}
+
+function KeptSolves({ blockId, shownKey }: { blockId: string; shownKey: string | null }) {
+  const { revisionId, decimalSign, timeZone } = usePage();
+  const [isOpen, setOpen] = useState(false);
+  // A new solve is in the list when it is opened again: the key is part of what it is asked for.
+  const kept = useQuery({ ...keptSolvesQuery(revisionId, blockId), enabled: isOpen, staleTime: 0 });
+  if (shownKey === null) return null;
+  return (
+    <details onToggle={(event) => setOpen(event.currentTarget.open)}>
+      <summary>Every solve that was kept</summary>
+      {kept.isError ? <p className="note">The list cannot be read at the moment.</p> : null}
+      <ol className="plain">
+        {(kept.data ?? []).map((solve) => (
+          <li key={solve.key}>
+            pH {formatPh(solve.pH, 2, decimalSign)}, {formatDateTime(solve.at, timeZone)}, {solve.by}, engine{" "}
+            {solve.engine}
+            <br />
+            <span className="faint">{solve.rows.map((row) => `${row.name} ${row.amount} ${row.unit}`).join("; ")}</span>
+            <Fingerprint hex={solve.key} label="Key" short />
+          </li>
+        ))}
+      </ol>
+    </details>
+  );
+}

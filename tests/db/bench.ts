@@ -1,0 +1,110 @@
+// How long an acknowledgement of a keystroke takes, with one writer and with twenty on one page, against a bare insert of the
+// same bytes in the same run. `tsx tests/db/bench.ts`, or with TEST_DATABASE_URL set on a server.
+import { sql } from "drizzle-orm";
+import * as Y from "yjs";
+import type { Db } from "../../db/client.ts";
+import { beginEntry } from "../../db/entries.ts";
+import { newId } from "../../db/ids.ts";
+import type { Actor } from "../../db/policy.ts";
+import { importLibrary } from "../../db/seed/library.ts";
+import { appendUpdate } from "../../db/updates.ts";
+import { makeNotebook, makePerson, testDatabase } from "../support/database.ts";
+import { addBlock, firstLine, openWriter, rowOf } from "./desk-of.ts";
+
+const KEYSTROKES = 400;
+const WRITERS = 20;
+
+type Times = { p50: number; p95: number };
+
+async function bench(): Promise<void> {
+  const store = await testDatabase();
+  const { db } = store;
+  await importLibrary(db);
+  const { id: notebookId } = await makeNotebook(db);
+  const people: Actor[] = [];
+  for (let count = 0; count < WRITERS; count += 1) {
+    people.push(await makePerson(db, { roles: ["researcher"], memberOf: [notebookId] }));
+  }
+  const [author] = people;
+  if (author === undefined) throw new Error("nobody writes");
+  const draft = await beginEntry(db, author, { notebookId });
+  await fillPage(db, author, draft.revisionId);
+  const bare = await bareInserts(db);
+  print(`bare insert (${store.kind})`, bare, bare);
+  print("1 writer typing", await typing(db, [author], draft.revisionId, KEYSTROKES), bare);
+  print(`${WRITERS} writers on one page`, await typing(db, people, draft.revisionId, KEYSTROKES), bare);
+  print("typed value in a block, with its event", await amounts(db, author, draft.revisionId, 40), bare);
+  await store.close();
+}
+
+/** A page of ten blocks and two hundred lines, so that a validation of the whole page costs something. */
+async function fillPage(db: Db, author: Actor, revisionId: string): Promise<void> {
+  const writer = await openWriter(db, author, revisionId);
+  const row = await rowOf(db, "r", "reagent:sodium-chloride", "0.100");
+  await writer.write((page) => {
+    for (let line = 0; line < 200; line += 1) {
+      const paragraph = new Y.XmlElement("paragraph");
+      paragraph.insert(0, [new Y.XmlText(`Line ${line} of the page, as long as lines usually are when somebody writes.`)]);
+      page.push([paragraph]);
+    }
+    for (let block = 0; block < 10; block += 1) addBlock(page, `b${block}`, [{ ...row, id: `b${block}r` }]);
+  });
+}
+
+async function bareInserts(db: Db): Promise<Times> {
+  await db.execute(sql`create table bare (id text primary key, bytes bytea not null)`);
+  const times: number[] = [];
+  for (let count = 0; count < KEYSTROKES; count += 1) {
+    const start = performance.now();
+    await db.execute(sql`insert into bare values (${newId()}, ${Buffer.alloc(40)})`);
+    times.push(performance.now() - start);
+  }
+  return summary(times);
+}
+
+async function typing(db: Db, people: readonly Actor[], revisionId: string, keystrokes: number): Promise<Times> {
+  const writers = await Promise.all(people.map((person) => openWriter(db, person, revisionId)));
+  const times: number[] = [];
+  await Promise.all(
+    writers.map(async (writer, index) => {
+      const person = people[index];
+      if (person === undefined) return;
+      for (let count = 0; count < keystrokes / people.length; count += 1) {
+        const bytes = writer.change((page) => firstLine(page).insert(0, "k"));
+        const start = performance.now();
+        await appendUpdate(db, person, { revisionId, updateId: newId(), bytes });
+        times.push(performance.now() - start);
+      }
+    }),
+  );
+  return summary(times);
+}
+
+async function amounts(db: Db, author: Actor, revisionId: string, changes: number): Promise<Times> {
+  const writer = await openWriter(db, author, revisionId);
+  const times: number[] = [];
+  for (let count = 0; count < changes; count += 1) {
+    const bytes = writer.change((page) => {
+      const block = page.get(page.length - 1);
+      const row = block instanceof Y.XmlElement ? block.get(0) : null;
+      if (row instanceof Y.XmlElement) row.setAttribute("amount", `0.${100 + count}`);
+    });
+    const start = performance.now();
+    await appendUpdate(db, author, { revisionId, updateId: newId(), bytes });
+    times.push(performance.now() - start);
+  }
+  return summary(times);
+}
+
+function summary(times: number[]): Times {
+  const sorted = [...times].sort((a, b) => a - b);
+  const at = (share: number) => sorted[Math.min(sorted.length - 1, Math.floor(sorted.length * share))] ?? 0;
+  return { p50: at(0.5), p95: at(0.95) };
+}
+
+function print(what: string, times: Times, bare: Times): void {
+  const ratio = (times.p50 / bare.p50).toFixed(1);
+  process.stdout.write(`${what}: p50 ${times.p50.toFixed(2)} ms, p95 ${times.p95.toFixed(2)} ms, ${ratio} times a bare insert\n`);
+}
+
+await bench();
