@@ -4,6 +4,7 @@ import type { ReactNode } from "react";
 import { SkipToLeaf } from "../components/leaf/leaf.tsx";
 import { Providers } from "./_components/providers.tsx";
 import "./globals.css";
+import "./pages.css";
 
 export const metadata: Metadata = {
   title: { default: "Counterleaf", template: "%s · Counterleaf" },

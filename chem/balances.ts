@@ -16,7 +16,7 @@ import {
   times,
 } from "./latex.ts";
 import type { ReadBlock } from "./read-block.ts";
-import { shown } from "./read-block.ts";
+import { shown } from "./refuse.ts";
 import type { Root } from "./solve.ts";
 import type { FamilySymbols } from "./symbols.ts";
 import { familySymbols, ionSymbol } from "./symbols.ts";

@@ -75,22 +75,25 @@ export function compare(a: Exact, b: Exact): -1 | 0 | 1 {
   return sign(subtract(a, b));
 }
 
-/** The nearest double, to within 1e-20 of a unit in the last place. Below 1e-290 in magnitude the result is zero. */
+/** The nearest double, to within 1e-20 of a unit in the last place. Below 1e-277 in magnitude the result is zero. */
 export function toNumber(value: Exact): number {
   const { mantissa, shift } = scaledQuotient(value);
-  return shift > 1060 ? 0 : scale(Number(mantissa), -shift);
+  return shift > VANISHING_SHIFT ? 0 : scale(Number(mantissa), -shift);
 }
 
 /** The value as a sum of two doubles, to about 32 significant digits. */
 export function toTwoDoubles(value: Exact): TwoDoubles {
   const { mantissa, shift } = scaledQuotient(value);
-  if (shift > 1060) return { hi: 0, lo: 0 };
+  if (shift > VANISHING_SHIFT) return { hi: 0, lo: 0 };
   const hi = Number(mantissa);
   const lo = Number.isFinite(hi) ? Number(mantissa - BigInt(hi)) : 0;
   return { hi: scale(hi, -shift), lo: scale(lo, -shift) };
 }
 
 const QUOTIENT_BITS = 140;
+/** A quotient shifted by more than this lies below 1e-277: as a double it is taken as zero. */
+const VANISHING_SHIFT = 1060;
+const BITS_A_DIGIT = 4;
 
 /** mantissa · 2^-shift = value, with QUOTIENT_BITS significant bits at least. */
 function scaledQuotient(value: Exact): { mantissa: bigint; shift: number } {
@@ -104,7 +107,7 @@ function scaledQuotient(value: Exact): { mantissa: bigint; shift: number } {
 }
 
 function bitLength(value: bigint): number {
-  return value.toString(16).length * 4;
+  return value.toString(16).length * BITS_A_DIGIT;
 }
 
 /** x · 2^power in two halves, so that neither factor leaves the range of a double. */

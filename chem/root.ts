@@ -14,9 +14,19 @@ const MAX_ITERATIONS = 200;
 const MAX_IONIC_ITERATIONS = 100;
 /** A sum of relative terms beyond this is formed again on logarithms. */
 const OVERFLOW = 1e280;
+/** Sides this near to each other make the difference itself, not the logarithm of their quotient, the better function to follow. */
+const CLOSE = 1e-3;
+/** A step in ln a(H+) below this is as good as a relative change. */
+const SMALL_STEP = 1e-8;
+/** The step after which Newton's next would vanish in rounding. */
+const LAST_STEP = 1e-9;
+/** A step below this that does not shrink is rounding noise. */
+const NOISE_STEP = 1e-12;
 const EPSILON = Number.EPSILON;
 /** Self-consistency asked of the ionic strength, relative; its own rounding error is about this large. */
 const IONIC_TOLERANCE = 4e-15;
+/** A gap of so many tolerances that does not shrink any more is noise. */
+const NOISE = 16;
 
 export type RootFound = { h: number; ionicStrength: number; iterations: number };
 
@@ -171,7 +181,8 @@ export function setIonicStrength(work: Work, I: number): void {
 /**
  * The root at fixed activity coefficients.
  * @param start  a guess of a(H+); any positive number will do
- * @returns      a(H+); NaN when no root was found. `work.sums` holds the sides at the root; iterations are added to `work.iterations`.
+ * @returns      a(H+); NaN when no root was found. `work.sums` holds the sides at the last point evaluated, at most 1e-9 away; iterations are
+ *               added to `work.iterations`.
  */
 export function rootAtFixedGamma(work: Work, start: number): number {
   let h = start;
@@ -181,28 +192,34 @@ export function rootAtFixedGamma(work: Work, start: number): number {
   for (let k = 0; k < MAX_ITERATIONS; k++) {
     evaluate(work, h);
     work.iterations++;
-    const moved = levelsMoved(work);
-    if (moved) {
+    let left = work.sums[LEFT] ?? 0;
+    let right = work.sums[RIGHT] ?? 0;
+    if (levelsMoved(work)) {
       takeNearestLevels(work);
-      evaluate(work, h);
+      // Far from the root the sums just formed do as well; near it their difference may be nothing but cancellation.
+      if (Math.abs(left - right) < CLOSE * left) {
+        evaluate(work, h);
+        left = work.sums[LEFT] ?? 0;
+        right = work.sums[RIGHT] ?? 0;
+      }
     }
-    const left = work.sums[LEFT] ?? 0;
-    const right = work.sums[RIGHT] ?? 0;
     if (!(left > 0 && right > 0 && left < OVERFLOW && right < OVERFLOW)) return Number.NaN;
     const difference = left - right;
     if (difference === 0) return h;
     if (difference < 0) low = h;
     else high = h;
-    const close = Math.abs(difference) < 1e-3 * left;
+    const close = Math.abs(difference) < CLOSE * left;
     const slopeOfLog = (work.sums[LEFT_SLOPE] ?? 0) / left - (work.sums[RIGHT_SLOPE] ?? 0) / right;
     let step = close
       ? difference / ((work.sums[LEFT_SLOPE] ?? 0) - (work.sums[RIGHT_SLOPE] ?? 0))
       : Math.log(left / right) / slopeOfLog;
     // At the rounding level the step no longer shrinks: this is the root.
-    if (Math.abs(step) < 1e-12 && Math.abs(step) >= Math.abs(lastStep) / 2) return h;
+    if (Math.abs(step) < NOISE_STEP && Math.abs(step) >= Math.abs(lastStep) / 2) return h;
+    // Newton's error is the square of its step: after one so short nothing is left to correct.
+    if (close && Math.abs(step) < LAST_STEP) return h - h * step;
     if (!(step < LONGEST_STEP)) step = LONGEST_STEP;
     if (!(step > -LONGEST_STEP)) step = -LONGEST_STEP;
-    let next = Math.abs(step) < 1e-8 ? h - h * step : h * Math.exp(-step);
+    let next = Math.abs(step) < SMALL_STEP ? h - h * step : h * Math.exp(-step);
     if (!(next > low && next < high)) {
       if (Math.abs(step) <= 2 * EPSILON) return h;
       next = low > 0 && high < Number.POSITIVE_INFINITY ? Math.sqrt(low) * Math.sqrt(high) : next;
@@ -280,7 +297,7 @@ function selfConsistent(work: Work, hAtZero: number, IAtZero: number): number {
     else high = I;
     // The bracket has closed to neighbouring doubles, or the gap is rounding noise that no longer shrinks.
     if (high < Number.POSITIVE_INFINITY && high - low <= 2 * EPSILON * high) return I;
-    if (Math.abs(gap) <= 16 * IONIC_TOLERANCE * I && Math.abs(gap) >= smallest) return I;
+    if (Math.abs(gap) <= NOISE * IONIC_TOLERANCE * I && Math.abs(gap) >= smallest) return I;
     smallest = Math.min(smallest, Math.abs(gap));
     const slope = (gap - gapBefore) / (I - before);
     before = I;

@@ -15,7 +15,8 @@ import {
   WATER_IDEAL_LATEX,
 } from "./latex.ts";
 import type { ReadBlock } from "./read-block.ts";
-import { readBlock, shown } from "./read-block.ts";
+import { readBlock } from "./read-block.ts";
+import { shown } from "./refuse.ts";
 import { checkCharge } from "./second-opinion.ts";
 import type { Root } from "./solve.ts";
 import { solve } from "./solve.ts";

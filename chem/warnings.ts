@@ -3,7 +3,7 @@
 import { MODEL_RANGES } from "./activity.ts";
 import type { Warning } from "./errors.ts";
 import type { ReadBlock } from "./read-block.ts";
-import { shown } from "./read-block.ts";
+import { shown } from "./refuse.ts";
 import type { BlockInput, Comparison, ConstantUsed, SolvedBlock } from "./types.ts";
 import { TEMPERATURE_C } from "./water.ts";
 

@@ -1,5 +1,5 @@
 // The library as asked by the page: what a name means, what a substance gives, what belongs together, what hazards are on file.
-import { and, asc, desc, eq, inArray, or, sql } from "drizzle-orm";
+import { and, asc, desc, eq, inArray, or, type SQL, sql } from "drizzle-orm";
 import { z } from "zod";
 import type { ConstantInput, FamilyInput, Gives } from "../chem/index.ts";
 import { debyeHuckelA25, pKw25 } from "../chem/index.ts";
@@ -40,7 +40,7 @@ export type CompoundSearch = {
   casCheck: CasCheck | null;
 };
 
-const FUZZY_CANDIDATES = 300;
+const MOST_CANDIDATES = 300;
 const LONGEST_QUESTION = 200;
 
 /**
@@ -53,7 +53,7 @@ export async function searchCompounds(db: Db, text: string, limit: number): Prom
     const casCheck = checkCas(asked);
     if (casCheck !== null) return { items: [], casCheck };
   }
-  const found = await findNames(db, asked);
+  const found = await findNames(db, asked, limit);
   const best = new Map<string, string>();
   for (const row of found) if (!best.has(row.compoundId)) best.set(row.compoundId, row.shown);
   const ids = [...best.keys()].slice(0, limit);
@@ -324,52 +324,78 @@ function familiesOf(gives: readonly Gives[]): string[] {
 
 type FoundName = { compoundId: string; shown: string };
 
-async function findNames(db: Db, asked: string): Promise<FoundName[]> {
+/** Names that fit the text, best first. Misspelt ones are looked for only when nothing fits exactly. */
+async function findNames(db: Db, asked: string, limit: number): Promise<FoundName[]> {
+  const fitting = await fittingNames(db, asked);
+  const name = comparedName(asked);
+  const compounds = new Set(fitting.map((row) => row.compoundId));
+  if (name.length < 3 || compounds.size >= limit || fitting.some((row) => row.rank === 0)) return fitting;
+  return [...fitting, ...(await similarNames(db, name))];
+}
+
+const kindOrder = sql`case ${compoundNames.kind} when 'name' then 0 when 'form' then 1 when 'synonym' then 1 else 2 end`;
+const compoundOrder = sql`case ${compoundNames.compoundKind} when 'reagent' then 0 when 'family' then 1 else 2 end`;
+const tieOrder = [
+  kindOrder,
+  compoundOrder,
+  sql`length(${compoundNames.compared})`,
+  asc(compoundNames.compared),
+  asc(compoundNames.compoundId),
+];
+const isNamed = inArray(compoundNames.kind, ["name", "synonym", "form"]);
+
+/** Exact (rank 0), beginning with the text (1), or with words that begin with the words of the text (2). */
+async function fittingNames(db: Db, asked: string): Promise<(FoundName & { rank: number })[]> {
+  const n = compoundNames;
   const name = comparedName(asked);
   const formulas = formulasOf(asked);
   const cas = /^[\d\s‐‑–-]{4,}$/.test(asked) ? casDigits(asked) : "";
-  if (name === "" && formulas.length === 0 && cas === "") return [];
-  const n = compoundNames;
   const words = name.split(" ").filter((word) => word !== "");
-  const isNamed = inArray(n.kind, ["name", "synonym", "form"]);
-  const exactName = and(isNamed, eq(n.compared, name));
-  const prefix = and(isNamed, sql`${n.compared} like ${`${name}%`}`);
-  const wordPrefixes = and(isNamed, ...words.map((word) => sql`(' ' || ${n.compared}) like ${`% ${word}%`}`));
-  const fuzzy = and(isNamed, or(sql`${n.compared} % ${name}`, sql`${name} <% ${n.compared}`));
-  const exactFormula = formulas.length === 0 ? undefined : and(eq(n.kind, "formula"), inArray(n.compared, formulas));
-  const hydrateFormula =
-    formulas.length === 0
-      ? undefined
-      : and(eq(n.kind, "formula"), or(...formulas.map((formula) => sql`${n.compared} like ${`${formula}.%`}`)));
-  const exactCas = cas.length < 5 ? undefined : and(eq(n.kind, "cas"), eq(n.compared, cas));
-  const casPrefix = cas.length < 4 ? undefined : and(eq(n.kind, "cas"), sql`${n.compared} like ${`${cas}%`}`);
-  const named = name === "" ? [] : [exactName, prefix, wordPrefixes, ...(name.length < 3 ? [] : [fuzzy])];
-  const whens = [
-    { found: or(name === "" ? undefined : exactName, exactFormula, exactCas), rank: 0 },
-    { found: or(name === "" ? undefined : prefix, hydrateFormula, casPrefix), rank: 1 },
-    { found: name === "" ? undefined : wordPrefixes, rank: 2 },
-  ].filter((when) => when.found !== undefined);
+  const named = (condition: SQL) => (name === "" ? undefined : and(isNamed, condition));
+  const formula = (condition: (formula: string) => SQL) =>
+    formulas.length === 0 ? undefined : and(eq(n.kind, "formula"), or(...formulas.map(condition)));
+  const numbered = (condition: SQL) => (cas.length < 4 ? undefined : and(eq(n.kind, "cas"), condition));
+  const lanes = [
+    or(
+      named(eq(n.compared, name)),
+      formula((each) => eq(n.compared, each)),
+      numbered(eq(n.compared, cas)),
+    ),
+    or(
+      named(sql`${n.compared} like ${`${name}%`}`),
+      formula((each) => sql`${n.compared} like ${`${each}.%`}`),
+      numbered(sql`${n.compared} like ${`${cas}%`}`),
+    ),
+    named(
+      sql.join(
+        words.map((word) => sql`(' ' || ${n.compared}) like ${`% ${word}%`}`),
+        sql` and `,
+      ),
+    ),
+  ];
+  const fits = or(...lanes);
+  if (fits === undefined) return [];
   const rank = sql<number>`case ${sql.join(
-    whens.map((when) => sql`when ${when.found} then ${sql.raw(String(when.rank))}`),
+    lanes.flatMap((lane, place) => (lane === undefined ? [] : [sql`when ${lane} then ${sql.raw(String(place))}`])),
     sql` `,
-  )} else 3 end`;
-  const likeness = sql<number>`greatest(similarity(${n.compared}, ${name}), word_similarity(${name}, ${n.compared}) * 0.9)`;
-  const kindOrder = sql`case ${n.kind} when 'name' then 0 when 'form' then 1 when 'synonym' then 1 else 2 end`;
-  const compoundOrder = sql`case ${n.compoundKind} when 'reagent' then 0 when 'family' then 1 else 2 end`;
+  )} else 3 end`.mapWith(Number);
+  return db
+    .select({ compoundId: n.compoundId, shown: n.shown, rank })
+    .from(n)
+    .where(fits)
+    .orderBy(asc(rank), ...tieOrder)
+    .limit(MOST_CANDIDATES);
+}
+
+function similarNames(db: Db, name: string): Promise<FoundName[]> {
+  const n = compoundNames;
+  const likeness = sql`greatest(similarity(${n.compared}, ${name}), word_similarity(${name}, ${n.compared}) * 0.9)`;
   return db
     .select({ compoundId: n.compoundId, shown: n.shown })
     .from(n)
-    .where(or(...named, exactFormula, hydrateFormula, exactCas, casPrefix))
-    .orderBy(
-      asc(rank),
-      asc(sql`case when ${rank} = 3 then 1 - ${likeness} else 0 end`),
-      kindOrder,
-      compoundOrder,
-      sql`length(${n.compared})`,
-      asc(n.compared),
-      desc(n.compoundId),
-    )
-    .limit(FUZZY_CANDIDATES);
+    .where(and(isNamed, or(sql`${n.compared} % ${name}`, sql`${name} <% ${n.compared}`)))
+    .orderBy(desc(likeness), ...tieOrder)
+    .limit(MOST_CANDIDATES);
 }
 
 function formulasOf(text: string): string[] {

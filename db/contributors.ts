@@ -3,11 +3,15 @@ import { record } from "./audit.ts";
 import type { Db } from "./client.ts";
 import type { Actor } from "./policy.ts";
 import { contributors } from "./schema/records.ts";
-import type { Revision } from "./subjects.ts";
+import type { RevisionFacts } from "./subjects.ts";
 
 /** Enters the actor among those who wrote in the entry, once, with an event. For every verb that accepts something. */
-export async function becomeContributor(tx: Db, actor: Actor, revision: Revision, at: Date): Promise<void> {
-  if (revision.contributorIds.includes(actor.id)) return;
+export async function becomeContributor(
+  tx: Db,
+  actor: Actor,
+  revision: Pick<RevisionFacts, "entryId" | "number">,
+  at: Date,
+): Promise<void> {
   const added = await tx
     .insert(contributors)
     .values({ entryId: revision.entryId, personId: actor.id, since: at })

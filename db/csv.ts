@@ -9,7 +9,7 @@ export type CsvCell = string | number | null;
  */
 export function csvText(header: readonly string[], rows: readonly (readonly CsvCell[])[]): string {
   const cells = [header, ...rows].map((row) => row.map((cell) => (typeof cell === "string" ? inert(cell) : cell)));
-  return stringify(cells, { record_delimiter: "\r\n", bom: true });
+  return stringify(cells, { record_delimiter: "\r\n", bom: true, quoted_match: /[\r\n]/ });
 }
 
 const PLAIN_NUMBER = /^[+-]?(\d+(\.\d*)?|\.\d+)(e[+-]?\d+)?$/i;

@@ -23,6 +23,8 @@ export type Page = {
   /** read when somebody first writes: typed values as they stand, and whose client ids there are (null: the server's) */
   values: Map<string, StandingValue> | null;
   clients: Map<number, string | null> | null;
+  /** who is known to be a contributor; others may be as well */
+  contributors: Set<string>;
   /** of the compounds that were met, for the labels of typed values */
   names: Map<string, string>;
 };
@@ -89,7 +91,17 @@ export async function loadPage(db: Db, revisionId: string, seq: number, bytes: n
     });
     after = last.seq;
   }
-  return { doc, seq, bytes, unchecked: 0, room: 0, names: new Map(), values: null, clients: null };
+  return {
+    doc,
+    seq,
+    bytes,
+    unchecked: 0,
+    room: 0,
+    names: new Map(),
+    contributors: new Set(),
+    values: null,
+    clients: null,
+  };
 }
 
 /** The typed values as they stand; asked under the revision's lock. */

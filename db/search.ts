@@ -54,7 +54,7 @@ export type SearchHit = {
   witnessedAt: string | null;
   calculatedPH: number[];
   measuredPH: number[];
-  /** where on the page: role, the line, and the compound as named there; "words" for a hit by words */
+  /** where on the page, compositions first: role, the line, and the compound as named there; "words" for a hit by words */
   lines: { role: SearchRole | "words"; line: string; compound: { id: string; name: string } | null }[];
   /** lines beyond those shown */
   moreLines: number;
@@ -395,7 +395,7 @@ async function withLines(db: Db, asked: Asked, rows: readonly HitRow[]): Promise
       sql`select o.revision_id, o.role, o.line, o.compound_id from occurrences o
         where o.revision_id in ${rows.map((row) => row.revision_id)} and o.compound_id in ${asked.compoundIds}
           ${asked.roles.length === 0 ? sql`` : sql`and o.role in ${asked.roles}`}
-        order by o.revision_id, o.position`,
+        order by o.revision_id, o.role <> 'component', o.position`,
     );
     for (const line of lines) byRevision.set(line.revision_id, [...(byRevision.get(line.revision_id) ?? []), line]);
   }

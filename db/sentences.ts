@@ -33,7 +33,7 @@ const WORDS = {
   "signing.failed": () => "gave a wrong password when signing",
   "account.locked": (d) =>
     `was locked out until ${d.text("until")} after ${d.text("failures")} failures${d.of("account", ": ")}`,
-  "session.ended": (d) => `ended ${d.of("count", "") === "" ? "a session" : `${d.text("count")} sessions`}`,
+  "session.ended": (d) => (d.text("count") === "1" ? "ended a session" : `ended ${d.text("count")} sessions`),
   "session.closed": () => "signed out",
   "password.changed": () => "changed the password",
   "password.reset": () => "set a new password with a link sent by mail",

@@ -16,7 +16,7 @@ import { Refused } from "./errors.ts";
 import { type Page, standingValues } from "./pages.ts";
 import type { Actor } from "./policy.ts";
 import { revisions, typedValues } from "./schema/records.ts";
-import type { Revision } from "./subjects.ts";
+import type { RevisionFacts } from "./subjects.ts";
 
 /** Validates the page and derives its typed values; answers which of them differ from those that stand. */
 export async function checkWhole(tx: Db, revisionId: string, page: Page): Promise<ValueChanges> {
@@ -48,13 +48,13 @@ export type ValueChanges = {
 export async function writeValues(
   tx: Db,
   actor: Actor,
-  revision: Revision,
+  revision: RevisionFacts,
   changes: ValueChanges,
   at: Date,
 ): Promise<void> {
   const revisionId = revision.id;
   const { title, doneOn, lateReason } = changes.head;
-  if (title !== revision.title || doneOn !== (revision.doneOn ?? "") || lateReason !== (revision.lateReason ?? "")) {
+  if ([...changes.set, ...changes.gone].some(({ path }) => path.startsWith("head."))) {
     await tx
       .update(revisions)
       .set({ title, doneOn: doneOn === "" ? null : doneOn, lateReason: lateReason === "" ? null : lateReason })
@@ -88,7 +88,12 @@ export async function writeValues(
 }
 
 /** One event for each typed value that differs, with what it was and what it is (REC-01). */
-export async function recordValues(tx: Db, actor: Actor, revision: Revision, changes: ValueChanges): Promise<void> {
+export async function recordValues(
+  tx: Db,
+  actor: Actor,
+  revision: RevisionFacts,
+  changes: ValueChanges,
+): Promise<void> {
   const on = (path: string) => ({ objectKind: "value", objectId: `${revision.id}:${path}`, entryId: revision.entryId });
   for (const { path, label, was, value } of changes.set) {
     const detail = { revision: revision.number, path, label, old: was, new: value };

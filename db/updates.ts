@@ -1,25 +1,23 @@
 // What is typed on a page: accepted, numbered, kept for good. See RECORDS.md, "The page while it is a draft".
 import { and, asc, eq, gt, sql } from "drizzle-orm";
 import * as Y from "yjs";
+import { z } from "zod";
 import { record } from "./audit.ts";
-import type { Db } from "./client.ts";
+import { type Db, readRows } from "./client.ts";
 import { becomeContributor } from "./contributors.ts";
 import { Refused } from "./errors.ts";
 import { newId } from "./ids.ts";
 import { applyToPage, readClaim, wordsOfUpdate } from "./page-change.ts";
 import { knownClients, putPageBack, readPage, takePage } from "./pages.ts";
 import { type Actor, demand, may } from "./policy.ts";
-import { takeFrom } from "./rate.ts";
 import { snapshots, strayUpdates as strays, updates, yjsClients } from "./schema/records.ts";
-import { findRevision, lockRevision } from "./subjects.ts";
+import { findRevision, lockKnown, type RevisionFacts } from "./subjects.ts";
 import { checkWhole, recordValues, standingAfter, writeValues } from "./typed-values.ts";
+import { takeUpdate } from "./update-rate.ts";
 
 export const LARGEST_UPDATE_BYTES = 1024 * 1024;
 /** Of a page's whole history; a page of 20,000 edits has about 0.6 MB. */
 export const LARGEST_PAGE_BYTES = 16 * 1024 * 1024;
-/** A browser posts at most every 150 ms; the rest is room for several tabs and for what was typed without network. */
-const UPDATES_A_MINUTE = 1200;
-const MINUTE_MS = 60_000;
 const UPDATES_BETWEEN_SNAPSHOTS = 200;
 /** What may come in as mere typing before the whole page is validated again. */
 const UNCHECKED_BYTES = 32 * 1024;
@@ -38,10 +36,10 @@ export async function appendUpdate(db: Db, actor: Actor, input: UpdateInput): Pr
   if (!/^[\w-]{1,64}$/.test(input.updateId))
     throw new Refused("update.invalid", { reason: "The change has no proper id." });
   if (input.bytes.length > LARGEST_UPDATE_BYTES) throw new Refused("update.too-large", { limit: LARGEST_UPDATE_BYTES });
-  const taken = await takeFrom(db, `updates:${actor.id}`, UPDATES_A_MINUTE, MINUTE_MS);
-  if (!taken.ok) throw new Refused("update.too-many", { retryAfterS: taken.retryAfterS });
+  await takeUpdate(db, actor.id);
+  const facts = await factsOf(db, actor, input.revisionId);
   try {
-    return await db.transaction((tx) => acceptUpdate(tx, actor, input));
+    return await db.transaction((tx) => acceptUpdate(tx, actor, facts, input));
   } catch (refusal) {
     // The transaction is gone with the refusal; what was typed is not.
     if (refusal instanceof Refused && refusal.code === "revision.not-draft") {
@@ -52,26 +50,41 @@ export async function appendUpdate(db: Db, actor: Actor, input: UpdateInput): Pr
   }
 }
 
-async function acceptUpdate(tx: Db, asked: Actor, input: UpdateInput): Promise<{ seq: number }> {
+/** Whose a revision is never changes, so it is asked once in a process. */
+async function factsOf(db: Db, actor: Actor, revisionId: string): Promise<RevisionFacts> {
+  const known = knownFacts.get(revisionId);
+  if (known !== undefined) return known;
+  const { revision } = await findRevision(db, actor, revisionId);
+  const { id, number, entryId, notebookId, authorId } = revision;
+  const facts = { id, number, entryId, notebookId, authorId };
+  if (knownFacts.size >= FACTS_KEPT) knownFacts.clear();
+  knownFacts.set(revisionId, facts);
+  return facts;
+}
+
+const FACTS_KEPT = 10_000;
+const knownFacts = new Map<string, RevisionFacts>();
+
+async function acceptUpdate(tx: Db, asked: Actor, facts: RevisionFacts, input: UpdateInput): Promise<{ seq: number }> {
   const { revisionId, bytes } = input;
-  const { revision, actor } = await lockRevision(tx, asked, revisionId);
-  demand(actor, "entry.read", revision.subject);
-  const repeated = await seqOfRepeat(tx, actor, input);
-  if (repeated !== null) return { seq: repeated };
-  if (revision.state !== "draft" && may(actor, "entry.write", { ...revision.subject, state: "draft" })) {
-    throw new Refused("revision.not-draft", { state: revision.state });
+  const { actor, subject, mark } = await lockKnown(tx, asked, facts);
+  demand(actor, "entry.read", subject);
+  if (subject.state !== "draft" && may(actor, "entry.write", { ...subject, state: "draft" })) {
+    const seq = await seqOfRepeat(tx, actor, input);
+    if (seq !== null) return { seq };
+    throw new Refused("revision.not-draft", { state: subject.state });
   }
-  demand(actor, "entry.write", revision.subject);
-  if (revision.pageBytes + bytes.length > LARGEST_PAGE_BYTES) {
+  demand(actor, "entry.write", subject);
+  if (mark.pageBytes + bytes.length > LARGEST_PAGE_BYTES) {
     throw new Refused("page.too-large", { limit: LARGEST_PAGE_BYTES });
   }
 
-  const page = await takePage(tx, revision);
+  const page = await takePage(tx, mark);
   const owners = await knownClients(tx, revisionId, page);
   const claim = readClaim(page.doc, bytes);
   const isForged = claim.ok && claim.clients.some((client) => owners.has(client) && owners.get(client) !== actor.id);
   if (!claim.ok || isForged) {
-    putPageBack(revisionId, revision.pageToken, page);
+    putPageBack(revisionId, mark.pageToken, page);
     if (claim.ok) throw new Refused("update.forged");
     throw new Refused("update.invalid", { reason: claim.reason, incomplete: claim.incomplete });
   }
@@ -79,14 +92,15 @@ async function acceptUpdate(tx: Db, asked: Actor, input: UpdateInput): Promise<{
   const change = applyToPage(page.doc, bytes);
   if (change === null) throw new Refused("update.invalid", { reason: BUILDS_ON_OTHERS, incomplete: true });
   if (change.kind === "nothing") {
-    putPageBack(revisionId, revision.pageToken, page);
-    return { seq: revision.lastSeq };
+    putPageBack(revisionId, mark.pageToken, page);
+    // What was accepted before changes nothing when it comes again.
+    return { seq: (await seqOfRepeat(tx, actor, input)) ?? mark.lastSeq };
   }
   const isTyping = change.kind === "typing" && page.unchecked + bytes.length <= Math.min(UNCHECKED_BYTES, page.room);
   const values = isTyping ? null : await checkWhole(tx, revisionId, page);
   page.unchecked = isTyping ? page.unchecked + bytes.length : 0;
 
-  const seq = revision.lastSeq + 1;
+  const seq = mark.lastSeq + 1;
   const token = newId();
   const at = new Date();
   await insertUpdate(tx, { ...input, seq, token, at, actor });
@@ -97,17 +111,19 @@ async function acceptUpdate(tx: Db, asked: Actor, input: UpdateInput): Promise<{
   if (seq % UPDATES_BETWEEN_SNAPSHOTS === 0) {
     await tx.insert(snapshots).values({ revisionId, seq, state: Y.encodeStateAsUpdate(page.doc) });
   }
-  if (values !== null) await writeValues(tx, actor, revision, values, at);
+  if (values !== null) await writeValues(tx, actor, facts, values, at);
   // Events come last: whoever records holds the head of the trail until the commit.
-  await becomeContributor(tx, actor, revision, at);
-  if (values !== null) await recordValues(tx, actor, revision, values);
+  if (!page.contributors.has(actor.id)) await becomeContributor(tx, actor, facts, at);
+  page.contributors.add(actor.id);
+  if (values !== null) await recordValues(tx, actor, facts, values);
   if (values !== null) page.values = standingAfter(page.values, values);
   page.seq = seq;
-  page.bytes = revision.pageBytes + bytes.length;
+  page.bytes = mark.pageBytes + bytes.length;
   putPageBack(revisionId, token, page);
   return { seq };
 }
 
+const ID_STOOD_FOR_ANOTHER = "Another change has this id.";
 const BUILDS_ON_OTHERS = "The change builds on others that have not arrived.";
 
 /** The number under which this very update was accepted before, or null. Refuses an id that stood for something else. */
@@ -119,25 +135,34 @@ async function seqOfRepeat(tx: Db, actor: Actor, input: UpdateInput): Promise<nu
     .limit(1);
   if (first === undefined) return null;
   if (first.personId !== actor.id || !Buffer.from(first.bytes).equals(input.bytes)) {
-    throw new Refused("update.invalid", { reason: "Another change has this id.", incomplete: false });
+    throw new Refused("update.invalid", { reason: ID_STOOD_FOR_ANOTHER, incomplete: false });
   }
   return first.seq;
 }
 
 type Accepted = UpdateInput & { seq: number; token: string; at: Date; actor: Actor };
 
-/** The row, the revision's mark and the bell in one statement: this is the road of every keystroke. */
+/**
+ * The row, the revision's mark and the bell in one statement: this is the road of every keystroke. Refuses an update whose id
+ * stood for another one.
+ */
 async function insertUpdate(tx: Db, { revisionId, updateId, bytes, seq, token, at, actor }: Accepted): Promise<void> {
   const time = sql.param(at, updates.at);
-  await tx.execute(sql`
-    with accepted as (
-      insert into updates (revision_id, seq, update_id, bytes, person_id, session_id, at)
-      values (${revisionId}, ${seq}, ${updateId}, ${sql.param(bytes, updates.bytes)}, ${actor.id}, ${actor.sessionId}, ${time})
-    ), marked as (
-      update revisions set last_seq = ${seq}, page_token = ${token}, page_bytes = page_bytes + ${bytes.length},
-        last_typed_at = ${time} where id = ${revisionId}
-    )
-    select pg_notify('leaf', ${JSON.stringify({ revision: revisionId, seq })})`);
+  const accepted = await readRows(
+    tx,
+    z.object({ seq: z.number() }),
+    sql`with accepted as (
+        insert into updates (revision_id, seq, update_id, bytes, person_id, session_id, at)
+        values (${revisionId}, ${seq}, ${updateId}, ${sql.param(bytes, updates.bytes)}, ${actor.id}, ${actor.sessionId}, ${time})
+        on conflict (revision_id, update_id) do nothing
+        returning seq
+      ), marked as (
+        update revisions set last_seq = ${seq}, page_token = ${token}, page_bytes = page_bytes + ${bytes.length},
+          last_typed_at = ${time} where id = ${revisionId}
+      )
+      select seq, pg_notify('leaf', ${JSON.stringify({ revision: revisionId, seq })})::text from accepted`,
+  );
+  if (accepted.length === 0) throw new Refused("update.invalid", { reason: ID_STOOD_FOR_ANOTHER, incomplete: false });
 }
 
 /** Keeps what came for a revision that is no longer a draft; answers whether it could be kept. */

@@ -212,7 +212,6 @@ INSERT INTO "audit_heads" (id, seq, hash) VALUES ('store', 0, repeat('0', 64));
 -- Indexes for finding ----------------------------------------------------------------------------------------
 
 CREATE INDEX "compound_names_trigrams" ON "compound_names" USING gin (compared gin_trgm_ops);
-CREATE INDEX "page_texts_words" ON "page_texts" USING gin (to_tsvector('simple', text));
 CREATE INDEX "entries_author" ON "entries" (author_id);
 CREATE INDEX "entries_newest" ON "entries" (created_at DESC, id DESC);
 CREATE INDEX "events_at" ON "events" (at);

@@ -72,7 +72,6 @@ END $$;
 CREATE TRIGGER revisions_found AFTER UPDATE OF title ON "revisions" FOR EACH ROW
   WHEN (OLD.title IS DISTINCT FROM NEW.title) EXECUTE FUNCTION follow_title();
 
-DROP INDEX "page_texts_words";
 CREATE INDEX "entries_in_notebook_newest" ON "entries" (notebook_id, created_at DESC, id DESC);
 CREATE INDEX "revisions_state" ON "revisions" (state, entry_id);
 CREATE INDEX "revisions_done_on" ON "revisions" (done_on, entry_id) WHERE done_on IS NOT NULL;

@@ -1,6 +1,7 @@
 // One's own password, and how others come to one: by a link in the mail, never by somebody who knows or chooses it (SGN-07).
 import "server-only";
 import { isAPIError } from "better-auth/api";
+import { guardPassword } from "../../db/attempts.ts";
 import type { Db } from "../../db/client.ts";
 import { Refused } from "../../db/errors.ts";
 import { acceptInvitation, type InvitePersonInput, invitePerson, readInvitation } from "../../db/invitations.ts";
@@ -15,16 +16,26 @@ import { passwordFault, passwordSentence } from "./passwords.ts";
 import { demandRate } from "./rate.ts";
 import { BadInput } from "./request.ts";
 import { hashPassword } from "./secrets.ts";
-import { accountOf, demandPassword, type SignedIn, signIn } from "./sign-in.ts";
+import { accountOf, isPasswordOf, type SignedIn, signIn } from "./sign-in.ts";
 
 /** Changes one's own password: the present one is asked for, every other session ends. */
 export async function changePassword(db: Db, actor: Actor, input: { currentPassword: string; newPassword: string }): Promise<void> {
   demandGoodPassword(input.newPassword, [actor.printedName, actor.email]);
-  await demandPassword(db, actor, input.currentPassword);
+  await demandPresentPassword(db, actor, input.currentPassword);
   const { internalAdapter } = await (await auth()).$context;
   await internalAdapter.updatePassword(actor.id, await hashPassword(input.newPassword));
   await recordSignInEvent(db, actor.id, "password.changed");
   await endOtherSessions(db, actor);
+}
+
+/** Counted like every other wrong password, but said at the field. */
+async function demandPresentPassword(db: Db, actor: Actor, password: string): Promise<void> {
+  try {
+    await guardPassword(db, { account: accountOf(actor.email), door: "sign-in", actor }, () => isPasswordOf(actor.id, password));
+  } catch (error) {
+    if (!(error instanceof Refused) || error.code !== "account.wrong-password") throw error;
+    throw new BadInput({ currentPassword: "This is not the password that you have now." });
+  }
 }
 
 const RESET_ANSWER_MS = 400;

@@ -22,7 +22,8 @@ export type Answer<T> = { ok: true; value: T } | { ok: false; problem: ShownProb
 
 /** What a route handler is given besides its actor. */
 export type Asked = { request: Request; params: Record<string, string | string[]>; db: Db; requestId: string };
-type RouteContext = { params: Promise<Record<string, string | string[] | undefined>> };
+/** Where the address has no variable part, Next hands in no params. */
+type RouteContext = { params: Promise<Record<string, string | string[] | undefined> | undefined> };
 type RouteHandler = (request: Request, context: RouteContext) => Promise<Response>;
 
 /** An action: the origin is ours, the input fits, somebody is signed in; then the verb, and a value or a problem. */
@@ -68,7 +69,7 @@ export function openRoute(handle: (asked: Asked, say: (actor: Actor) => void) =>
   return async (request, context) => {
     const answered = await translated(`${request.method} ${new URL(request.url).pathname}`, async (say, requestId) => {
       if (!["GET", "HEAD"].includes(request.method)) demandOwnPage(request.headers);
-      const params = Object.fromEntries(Object.entries(await context.params).flatMap(([name, value]) => (value === undefined ? [] : [[name, value]])));
+      const params = Object.fromEntries(Object.entries((await context.params) ?? {}).flatMap(([name, value]) => (value === undefined ? [] : [[name, value]])));
       const value = await handle({ request, params, db: await database(), requestId }, say);
       return { value, requestId };
     });

@@ -6,9 +6,14 @@ import { FILE_POLICY } from "./security-headers.ts";
 /** Raster pictures that browsers draw without running anything; their content was checked when they came. */
 const SHOWN = new Set(["image/png", "image/jpeg", "image/gif", "image/webp"]);
 
+/** Whether a page may draw the file: by what its content says, never by its name. */
+export function isPicture({ sniffedType }: { sniffedType: string | null }): boolean {
+  return sniffedType !== null && SHOWN.has(sniffedType);
+}
+
 /** The answer with the file. Chunks are read from the store as the browser takes them. */
 export function fileResponse(file: FileToRead): Response {
-  const isShown = file.sniffedType !== null && SHOWN.has(file.sniffedType);
+  const isShown = isPicture(file);
   return new Response(streamOf(file.chunks), {
     headers: {
       "content-type": isShown && file.sniffedType !== null ? file.sniffedType : "application/octet-stream",

@@ -1,5 +1,6 @@
 // The stand-in's receiving end: a signed address, the form with one file, the bytes into the store, the SDK told.
 import "server-only";
+import { z } from "zod";
 import { storeAttachment } from "../../db/attachments.ts";
 import { Refused } from "../../db/errors.ts";
 import type { Actor } from "../../db/policy.ts";
@@ -41,6 +42,20 @@ export function answerRange(actor: Actor, { request }: Pick<Asked, "request">): 
   ticketOf(actor, request);
   return new Response(null, { headers: { "x-ut-range-start": "0" } });
 }
+
+/**
+ * A refusal as the SDK's browser half can pass it on. Of another status it keeps only the number, so what it sent itself (it
+ * says its version) is answered with `error`, the sentence, under 200; anybody else gets the problem as it is.
+ */
+export async function answerSdk(request: Request, answer: Response): Promise<Response> {
+  if (answer.ok || !request.headers.has("x-uploadthing-version")) return answer;
+  const problem = problemWords.parse(await answer.json());
+  const headers = new Headers(answer.headers);
+  headers.set("content-type", "application/json");
+  return new Response(JSON.stringify({ error: problem.detail === undefined ? problem.title : `${problem.title}. ${problem.detail}`, problem }), { headers });
+}
+
+const problemWords = z.looseObject({ title: z.string(), detail: z.string().optional() });
 
 function ticketOf(actor: Actor, request: Request): UploadTicket {
   const ticket = readTicket(request.url, settings().origins);

@@ -2,7 +2,7 @@
 import "server-only";
 import { type DestinationStream, type Logger, pino } from "pino";
 
-const SECRET_FIELDS = ["password", "newPassword", "currentPassword", "secret", "token", "code", "cookie", "authorization", "jws"];
+const SECRET_FIELDS = ["password", "newPassword", "currentPassword", "secret", "token", "cookie", "authorization", "jws"];
 
 /** The log of this process. `COUNTERLEAF_LOG` sets the level; tests are silent. */
 export const log: Logger = createLog(process.env.COUNTERLEAF_LOG ?? (process.env.VITEST ? "silent" : "info"));

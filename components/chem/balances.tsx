@@ -187,7 +187,7 @@ function FractionsView({ family, solved }: { family: FractionFormulas; solved: S
         {family.values.map((value, lost) => (
           // biome-ignore lint/suspicious/noArrayIndexKey: the place is the number of protons lost
           <span key={lost} className="nowrap">
-            <Formula tex={`\\alpha_{${lost}}=`} /> {formatNumber(value, FIGURES)}
+            <Formula tex={`\\alpha_{${species[lost]?.latex ?? lost}}=`} /> {formatNumber(value, FIGURES)}
             {species[lost] === undefined ? null : <span className="faint"> {species[lost].name}</span>}
           </span>
         ))}

@@ -1,6 +1,7 @@
 // A solved equilibrium block, row by row in the leaf's layout: cautions before the answer, everything behind it after.
 
 import "./chem.css";
+import { useMemo } from "react";
 import type { Decimal, Refusal, SolvedBlock, Sweeps, Warning } from "../../chem/index.ts";
 import { SideRow } from "../leaf/side-row.tsx";
 import { capacityPlot, fractionsPlots, residualPlots } from "../plot/block-plots.ts";
@@ -99,17 +100,23 @@ function Plots({
   name: string;
   isStatic: boolean;
 }) {
-  const residual = residualPlots(sweeps, solved);
+  const [residuals, others] = useMemo(() => {
+    const { coarse, refined } = residualPlots(sweeps, solved);
+    return [
+      [coarse, refined],
+      [...fractionsPlots(sweeps, solved), capacityPlot(sweeps, solved)],
+    ];
+  }, [sweeps, solved]);
   const plot = (model: PlotModel) =>
     isStatic ? <PlotStatic key={model.title} model={model} /> : <PlotFigure key={model.title} model={model} />;
   return (
     <>
       <SideRow label="Residual" long>
-        <div className="plot-pair">{[residual.coarse, residual.refined].map(plot)}</div>
+        <div className="plot-pair">{residuals.map(plot)}</div>
         {isStatic ? null : <SweepDownload sweeps={sweeps} name={name} />}
       </SideRow>
       <SideRow label="Fractions" note="and capacity" long>
-        <div className="plot-pair">{[...fractionsPlots(sweeps, solved), capacityPlot(sweeps, solved)].map(plot)}</div>
+        <div className="plot-pair">{others.map(plot)}</div>
       </SideRow>
     </>
   );

@@ -4,6 +4,7 @@
 import "katex/dist/katex.min.css";
 import "./chem.css";
 import katex from "katex";
+import { useMemo } from "react";
 import { formulaObjection } from "./written-formula.ts";
 
 type FormulaProps = {
@@ -12,20 +13,24 @@ type FormulaProps = {
   display?: boolean;
 };
 
-type Set = { html: string } | { objection: string };
+type Setting = { html: string } | { objection: string };
 
 /** A formula that the program made from structure. */
 export function Formula({ tex, display = false }: FormulaProps) {
-  return <Shown tex={tex} display={display} set={setFormula(tex, display)} />;
+  const set = useMemo(() => setFormula(tex, display), [tex, display]);
+  return <Shown tex={tex} display={display} set={set} />;
 }
 
 /** A formula that a person wrote: only allowed commands, else the source text stands there with the reason. */
 export function WrittenFormula({ tex, display = false }: FormulaProps) {
-  const objection = formulaObjection(tex);
-  return <Shown tex={tex} display={display} set={objection === null ? setFormula(tex, display) : { objection }} />;
+  const set = useMemo(() => {
+    const objection = formulaObjection(tex);
+    return objection === null ? setFormula(tex, display) : { objection };
+  }, [tex, display]);
+  return <Shown tex={tex} display={display} set={set} />;
 }
 
-function Shown({ tex, display, set }: Required<FormulaProps> & { set: Set }) {
+function Shown({ tex, display, set }: Required<FormulaProps> & { set: Setting }) {
   if ("objection" in set) {
     return (
       <span className={display ? "math display formula-refused" : "math formula-refused"}>
@@ -42,7 +47,7 @@ function Shown({ tex, display, set }: Required<FormulaProps> & { set: Set }) {
   );
 }
 
-function setFormula(tex: string, displayMode: boolean): Set {
+function setFormula(tex: string, displayMode: boolean): Setting {
   try {
     const html = katex.renderToString(tex, {
       displayMode,

@@ -14,7 +14,7 @@ export function PocketTable({ solved }: { solved: SolvedBlock }) {
     {
       key: "A",
       name: <Formula tex="A" />,
-      what: "Debye–Hückel factor, L½ mol−½",
+      what: "Debye–Hückel factor, (L/mol)½",
       tabulated: null,
       used: fixed(solved.activity.A, 5),
     },
@@ -28,7 +28,7 @@ export function PocketTable({ solved }: { solved: SolvedBlock }) {
     {
       key: "pKw",
       name: <Formula tex="\mathrm{p}K_\mathrm{w}" />,
-      what: solved.pKw.source,
+      what: `water; ${solved.pKw.source}`,
       tabulated: fixed(solved.pKw.thermodynamic, 4),
       used: fixed(solved.pKw.conditional, 6),
     },
@@ -41,7 +41,9 @@ export function PocketTable({ solved }: { solved: SolvedBlock }) {
     })),
   ];
   return (
-    <TableRegion caption={`What a pocket calculator needs, at I = ${formatNumber(solved.ionicStrength, 4)} mol/L`}>
+    <TableRegion
+      caption={`At the solution’s ionic strength, I\u00a0=\u00a0${formatNumber(solved.ionicStrength, 4)} mol/L`}
+    >
       <thead>
         <tr>
           <th scope="col">Quantity</th>

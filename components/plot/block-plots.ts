@@ -16,7 +16,7 @@ export function residualPlots(sweeps: Sweeps, solved: SolvedBlock): { coarse: Pl
   const values = drawn.filter((value) => value !== null);
   const yMin = Math.floor(Math.min(-1, ...values));
   const yMax = Math.ceil(Math.max(0, ...values));
-  const y = { ...axisOver(RESIDUAL, null, yMin, yMax, 7), decimals: 0 };
+  const y = { ...axisOver(RESIDUAL, null, yMin, yMax, 8), decimals: 0 };
   const rootSays = residualSays(solved);
   const ends = rangeOf(sweeps.refined);
 
@@ -28,7 +28,7 @@ export function residualPlots(sweeps: Sweeps, solved: SolvedBlock): { coarse: Pl
       about,
       sentence,
       note: DRAWN_FOR_READING,
-      x: axisOver("pH", null, range.from, range.to, decimals > 3 ? 4 : 7),
+      x: axisOver("pH", null, range.from, range.to, decimals > 3 ? 4 : 8),
       y,
       points,
       curves: [
@@ -96,7 +96,7 @@ export function fractionsPlots(sweeps: Sweeps, solved: SolvedBlock): PlotModel[]
       about: aboutSweep(sweep),
       sentence: `At the root, pH\u00a0${fixed(solved.pH, 2)}, ${family.name} is ${listed(shares)}.`,
       note: null,
-      x: axisOver("pH", null, range.from, range.to),
+      x: axisOver("pH", null, range.from, range.to, 8),
       y: axisOver("fraction α", null, 0, 1, 5),
       points,
       curves,
@@ -125,7 +125,7 @@ export function capacityPlot(sweeps: Sweeps, solved: SolvedBlock): PlotModel {
     note: leaves
       ? "where water itself buffers more than the frame holds, the curve is cut off; the table has its values"
       : null,
-    x: axisOver("pH", null, range.from, range.to),
+    x: axisOver("pH", null, range.from, range.to, 8),
     y: axisOver("β", "(mol/L)", 0, top, 5),
     points,
     curves: [
@@ -177,7 +177,6 @@ function rangeOf(sweep: Sweep): { from: number; to: number } {
 
 function aboutSweep(sweep: Sweep): string {
   const { from, to } = rangeOf(sweep);
-  const step = (to - from) / Math.max(1, sweep.pH.length - 1);
-  const decimals = step >= 0.05 ? 0 : 3;
+  const decimals = Number.isInteger(from) && Number.isInteger(to) ? 0 : 3;
   return `pH\u00a0${fixed(from, decimals)} to ${fixed(to, decimals)}, ${sweep.pH.length} points`;
 }

@@ -27,6 +27,10 @@ export function PlotFigure({ model }: { model: PlotModel }) {
   const [isDrawn, setDrawn] = useState(false);
   const [asked, setAsked] = useState<number | null>(null);
   const layout = useMemo(() => layoutOf(model, width ?? PLOT_WIDTH, PLOT_HEIGHT), [model, width]);
+  // What does not move with the reading point is made once for a model.
+  const caption = useMemo(() => <PlotCaption model={model} id={sentenceId} />, [model, sentenceId]);
+  const still = useMemo(() => <PlotSvg model={model} />, [model]);
+  const values = useMemo(() => <PlotValues model={model} />, [model]);
 
   // biome-ignore lint/correctness/useExhaustiveDependencies: `theme` changes what the custom properties hold, which is read inside
   useEffect(() => {
@@ -72,7 +76,7 @@ export function PlotFigure({ model }: { model: PlotModel }) {
 
   return (
     <figure className="plot-figure">
-      <PlotCaption model={model} id={sentenceId} />
+      {caption}
       <div
         ref={box}
         className={isDrawn ? "plot-box plot-drawn" : "plot-box"}
@@ -90,7 +94,7 @@ export function PlotFigure({ model }: { model: PlotModel }) {
         onPointerMove={readPointer}
       >
         <div ref={host} className="plot-canvas" aria-hidden="true" />
-        <PlotSvg model={model} />
+        {still}
         {index === null || width === null ? null : <ReadingPoint model={model} index={index} layout={layout} />}
       </div>
       <p className="plot-read" aria-live="polite">
@@ -98,7 +102,7 @@ export function PlotFigure({ model }: { model: PlotModel }) {
           ? "Point at the plot, or focus it and use the arrow keys, to read values."
           : readingAt(model, index)}
       </p>
-      <PlotValues model={model} />
+      {values}
     </figure>
   );
 }

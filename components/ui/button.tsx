@@ -1,21 +1,7 @@
 "use client";
 // One button. Its words say what happens. One that is not yet possible stays reachable by keyboard and says why.
 import { type ButtonHTMLAttributes, type MouseEvent, type ReactNode, type Ref, useId } from "react";
-
-export type ButtonKind = "first" | "plain" | "stop" | "quiet" | "quiet-stop";
-
-const classes: Record<ButtonKind, string> = {
-  first: "btn first",
-  plain: "btn",
-  stop: "btn stop",
-  quiet: "quiet",
-  "quiet-stop": "quiet stop",
-};
-
-/** The class of a link that looks like a button: `<Link className={buttonClass("plain")} …>`. */
-export function buttonClass(kind: ButtonKind): string {
-  return classes[kind];
-}
+import { type ButtonKind, buttonClass } from "./button-class.ts";
 
 export type ButtonProps = Omit<ButtonHTMLAttributes<HTMLButtonElement>, "disabled" | "className"> & {
   kind?: ButtonKind;
@@ -56,7 +42,7 @@ export function Button({
       {...rest}
       ref={ref}
       type={type}
-      className={className ? `${classes[kind]} ${className}` : classes[kind]}
+      className={className ? `${buttonClass(kind)} ${className}` : buttonClass(kind)}
       onClick={press}
       aria-disabled={held || undefined}
       aria-busy={pending || undefined}

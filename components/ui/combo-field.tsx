@@ -67,20 +67,23 @@ export function ComboField({
 }: ComboFieldProps) {
   const id = useId();
   // Leaving or Escape brings the chosen item's text back, also when the item is no longer among those found.
-  const [chosen, setChosen] = useState({ value, text: value === "" ? "" : input });
-  if (chosen.value !== value) setChosen({ value, text: value === "" ? "" : input });
+  // For that it stays among the items, at their end.
+  const [chosen, setChosen] = useState<ComboItem>({ id: value, text: value === "" ? "" : input });
+  if (chosen.id !== value) setChosen({ id: value, text: value === "" ? "" : input });
+  const isFound = value === "" || items.some((item) => item.id === value);
+  const offered = isFound ? items : [...items, chosen];
   const described = classOf(error ? `${id}-error` : "", hint ? `${id}-hint` : "") || undefined;
   return (
     <ComboBox
       className={classOf("f", className)}
       inputValue={input}
       onInputChange={onInput}
-      items={items}
+      items={offered}
       value={value === "" ? null : value}
       onChange={(key) => {
         const picked = items.find((item) => item.id === key);
         if (picked && picked.id !== value) {
-          setChosen({ value: picked.id, text: picked.text });
+          setChosen(picked);
           onPick(picked);
         } else if (!allowsOwnText) {
           onInput(chosen.text);
@@ -144,7 +147,11 @@ export function ComboField({
             </ListBoxItem>
           )}
         </ListBox>
-        {note && items.length > 0 ? <span className="list-note">{note}</span> : null}
+        {items.length === 0 && !isFound ? (
+          <span className="list-note">{loading ? "Looking …" : emptyText}</span>
+        ) : note && items.length > 0 ? (
+          <span className="list-note">{note}</span>
+        ) : null}
       </Popover>
     </ComboBox>
   );

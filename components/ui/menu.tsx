@@ -2,7 +2,7 @@
 // Words that open into more words: acts, or places to go to.
 import type { ReactNode } from "react";
 import { Button, Menu as Inner, MenuItem, MenuTrigger, Popover } from "react-aria-components";
-import { type ButtonKind, buttonClass } from "./button.tsx";
+import { type ButtonKind, buttonClass } from "./button-class.ts";
 import { classOf } from "./field-parts.tsx";
 
 export type MenuAct = {

@@ -1,7 +1,7 @@
 "use client";
 // What vouches for a block, on the counterfoil beside it: how it stands, the key of its inputs, every solve that was kept (CAL-04).
 import { useQuery } from "@tanstack/react-query";
-import { useState } from "react";
+import { useEffect, useState } from "react";
 import { formatDateTime, formatPh } from "../../components/format.ts";
 import { Fingerprint } from "../../components/leaf/fingerprint.tsx";
 import { StateMark } from "../../components/leaf/state-mark.tsx";
@@ -38,8 +38,12 @@ export function BlockVouch({ block, number, answer }: { block: EquilibriumBlock;
 function KeptSolves({ blockId, shownKey }: { blockId: string; shownKey: string | null }) {
   const { revisionId, decimalSign, timeZone } = usePage();
   const [isOpen, setOpen] = useState(false);
-  // A new solve is in the list when it is opened again: the key is part of what it is asked for.
-  const kept = useQuery({ ...keptSolvesQuery(revisionId, blockId), enabled: isOpen, staleTime: 0 });
+  const kept = useQuery({ ...keptSolvesQuery(revisionId, blockId), enabled: isOpen });
+  const { refetch } = kept;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: a new key means that one more solve was kept
+  useEffect(() => {
+    if (isOpen) void refetch();
+  }, [isOpen, shownKey, refetch]);
   if (shownKey === null) return null;
   return (
     <details onToggle={(event) => setOpen(event.currentTarget.open)}>

@@ -124,7 +124,7 @@ function Row({
   const isPoured = row.unit === "mL" || row.unit === "L";
   const isBad = (["compound", "amount", "unit", "massFraction", "density"] as const).some((name) => error(name));
   return (
-    <div className={isBad ? "pour-row bad" : "pour-row"} role="group" aria-label={`Row ${index + 1}`}>
+    <fieldset className={isBad ? "pour-row bad" : "pour-row"} aria-label={`Row ${index + 1}`}>
       <CompoundField
         className="name"
         label={`Poured in, ${place}`}
@@ -216,7 +216,7 @@ function Row({
       >
         Row
       </Menu>
-    </div>
+    </fieldset>
   );
 }
 

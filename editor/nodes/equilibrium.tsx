@@ -1,7 +1,6 @@
 "use client";
 // The equilibrium block in the editor: inputs that are entered field by field, the server's answer below, the earlier one held while
 // a new one is on its way.
-import { useQuery } from "@tanstack/react-query";
 import type { Node } from "@tiptap/pm/model";
 import type { Command } from "@tiptap/pm/state";
 import { type NodeViewProps, NodeViewWrapper, useEditorState } from "@tiptap/react";
@@ -55,6 +54,9 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
           most={200}
           onEnter={(title) => run(setBlockField(id, "title", title))}
         />
+        <span className="note" role="status">
+          {answer.words}
+        </span>
         <span className="acts">
           <Button
             kind="quiet-stop"
@@ -127,13 +129,6 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
         </div>
         {errors.block("temperature") === undefined ? null : <FieldError>{errors.block("temperature")}</FieldError>}
       </SideRow>
-      {answer.words === null ? null : (
-        <SideRow label="State">
-          <p className="note" role="status">
-            {answer.words}
-          </p>
-        </SideRow>
-      )}
       {block.rows.length === 0 ? null : (
         <>
           <BlockResult

@@ -77,7 +77,7 @@ export async function openHouse(): Promise<House> {
   };
 }
 
-type Handler = (request: Request, context: { params: Promise<Record<string, string | string[] | undefined>> }) => Promise<Response>;
+type Handler = (request: Request, context: { params: Promise<Record<string, string | string[] | undefined> | undefined> }) => Promise<Response>;
 export type Question = {
   cookie?: string;
   method?: string;
@@ -92,7 +92,7 @@ export type Question = {
 
 /** Asks a route handler as a browser on one of our pages would. */
 export function ask(handler: Handler, path: string, question: Question = {}): Promise<Response> {
-  const { cookie, json, body, params = {}, signal, origin = ORIGIN } = question;
+  const { cookie, json, body, params, signal, origin = ORIGIN } = question;
   const headers = new Headers(question.headers);
   if (cookie !== undefined) headers.set("cookie", cookie);
   if (json !== undefined) headers.set("content-type", "application/json");

@@ -7,7 +7,7 @@ function written(say: (log: ReturnType<typeof createLog>) => void): string {
   return text;
 }
 
-it("leaves out passwords, codes and cookies wherever they stand (ADM-13)", () => {
+it("leaves out passwords, tokens and cookies wherever they stand (ADM-13)", () => {
   const text = written((log) => log.info({ password: "S3CRET-a", input: { token: "S3CRET-b", deep: { cookie: "S3CRET-c" } } }, "said"));
   expect(text).not.toContain("S3CRET");
   expect(text).toContain("said");

@@ -24,6 +24,8 @@ const FRACTION_FLOOR = 1e-12;
 /** What the banks fix unless a case says otherwise. */
 const BANK_A = "0.509";
 const BANK_PKW = "14.00";
+/** The enclosure is that of the constants as doubles; their rounding moves the root by some 1e-15 for each step. */
+const ENCLOSURE_SLACK = 1e-12;
 /** Half a unit of the last digit may sit on the edge of a printed tolerance. */
 const EDGE = 1e-12;
 
@@ -47,6 +49,7 @@ const caseShape = z.object({
   strong: z.array(ion),
   activity: z.string(),
   A: text.optional(),
+  davies: z.object({ A: text }).optional(),
   pKw: text.optional(),
   h_added: text.nullish(),
   oh_added: text.nullish(),
@@ -116,7 +119,7 @@ export function judgeCase(one: BankCase): Verdict {
     components: one.components.map(({ family, lost, conc }) => ({ family, lost, concentration: conc })),
     ions: one.strong.map((strong) => ({ name: strong.ion, z: strong.z, concentration: strong.conc })),
     activity: one.activity,
-    A: one.A ?? BANK_A,
+    A: one.A ?? one.davies?.A ?? BANK_A,
     pKw: one.pKw ?? BANK_PKW,
   });
   if (solved.kind === "refused") return { id: one.id, verdict: "refused", detail: solved.reason };
@@ -154,14 +157,18 @@ export function judgeCase(one: BankCase): Verdict {
   relative("[H+]", root.H, one.expect.H);
   relative("[OH-]", root.OH, one.expect.OH);
   relative("ionic strength", root.ionicStrength, one.expect.ionicStrength);
-  const enclosed = root.enclosure.lowPH <= numberOf(one.expect.pH) && numberOf(one.expect.pH) <= root.enclosure.highPH;
-  if (!enclosed && one.activity === "ideal") return failed(one.id, "the enclosure does not hold the reference pH");
+  const reference = numberOf(one.expect.pH);
+  const { lowPH, highPH } = root.enclosure;
+  const isEnclosed = lowPH - ENCLOSURE_SLACK <= reference && reference <= highPH + ENCLOSURE_SLACK;
+  if (!isEnclosed && worst.share <= 1)
+    return failed(one.id, `the enclosure ${lowPH} to ${highPH} does not hold ${reference}`);
   return { id: one.id, verdict: worst.share <= 1 ? "passed" : "failed", deviation: worst.share, detail: worst.what };
 }
 
 type SolvedText =
   | { kind: "solved"; root: Extract<Solution, { ok: true }>["root"]; total: number; netStrongAcid: number }
-  | { kind: "refused" | "failed"; reason: string };
+  | { kind: "refused"; reason: string }
+  | { kind: "failed"; reason: string };
 
 /** Solves, has the second opinion look at it, and returns the root, or what went wrong. */
 function solveText(mixtureText: MixtureText): SolvedText {

@@ -119,7 +119,7 @@ describe("a result carries a warning", () => {
     expect(new Set(order).size).toBeGreaterThan(1);
   });
 
-  it("of corrosion at pH 2 and at pH 11.5, and not between (SAF-01)", () => {
+  it("of corrosion at pH 2 and at pH 11.5, and not between (SAF-07)", () => {
     const corrosive = (input: BlockInput) => warnings(input).some((warning) => warning.code === "corrosive");
     expect(corrosive(hydrochloric("0.011", "ideal"))).toBe(true);
     expect(corrosive(hydrochloric("0.009", "ideal"))).toBe(false);

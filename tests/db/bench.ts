@@ -44,7 +44,9 @@ async function fillPage(db: Db, author: Actor, revisionId: string): Promise<void
   await writer.write((page) => {
     for (let line = 0; line < 200; line += 1) {
       const paragraph = new Y.XmlElement("paragraph");
-      paragraph.insert(0, [new Y.XmlText(`Line ${line} of the page, as long as lines usually are when somebody writes.`)]);
+      paragraph.insert(0, [
+        new Y.XmlText(`Line ${line} of the page, as long as lines usually are when somebody writes.`),
+      ]);
       page.push([paragraph]);
     }
     for (let block = 0; block < 10; block += 1) addBlock(page, `b${block}`, [{ ...row, id: `b${block}r` }]);
@@ -104,7 +106,9 @@ function summary(times: number[]): Times {
 
 function print(what: string, times: Times, bare: Times): void {
   const ratio = (times.p50 / bare.p50).toFixed(1);
-  process.stdout.write(`${what}: p50 ${times.p50.toFixed(2)} ms, p95 ${times.p95.toFixed(2)} ms, ${ratio} times a bare insert\n`);
+  process.stdout.write(
+    `${what}: p50 ${times.p50.toFixed(2)} ms, p95 ${times.p95.toFixed(2)} ms, ${ratio} times a bare insert\n`,
+  );
 }
 
 await bench();

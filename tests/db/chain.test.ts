@@ -15,7 +15,7 @@ import {
 
 describe("canonical text", () => {
   it("orders keys by their code units and writes numbers as ECMAScript does (RFC 8785, sections 3.2.2 and 3.2.3)", () => {
-    expect(canonicalDetail({ b: 1e21, a: [333333333.33333329, 1e30, 4.5, 2e-3, 1e-27], "€": null })).toBe(
+    expect(canonicalDetail(JSON.parse('{"b":1e21,"a":[333333333.33333329,1E30,4.50,2e-3,0.000000000000000000000000001],"€":null}'))).toBe(
       '{"a":[333333333.3333333,1e+30,4.5,0.002,1e-27],"b":1e+21,"€":null}',
     );
   });

@@ -2,6 +2,7 @@
 import { generateKeyPairSync, sign as signBytes, verify as verifyBytes } from "node:crypto";
 import { sql } from "drizzle-orm";
 import * as Y from "yjs";
+import { z } from "zod";
 import { type Db, readRows } from "../../db/client.ts";
 import { compoundItems } from "../../db/compounds.ts";
 import { beginEntry } from "../../db/entries.ts";
@@ -11,7 +12,6 @@ import type { Actor } from "../../db/policy.ts";
 import { contentToSign, signAsAuthor } from "../../db/signatures.ts";
 import { appendUpdate, pageState } from "../../db/updates.ts";
 import { checkRevision, countersign, markWhole, openRevision } from "../../db/witnessing.ts";
-import { z } from "zod";
 import { makeNotebook, makePerson } from "../support/database.ts";
 
 export type Lab = {
@@ -69,7 +69,13 @@ export async function openWriter(db: Db, actor: Actor, revisionId: string): Prom
     const { seq } = await appendUpdate(db, actor, { revisionId, updateId: newId(), bytes: change(edit) });
     return seq;
   };
-  return { doc, change, write, catchUp, type: (text) => write((page) => firstLine(page).insert(firstLine(page).length, text)) };
+  return {
+    doc,
+    change,
+    write,
+    catchUp,
+    type: (text) => write((page) => firstLine(page).insert(firstLine(page).length, text)),
+  };
 }
 
 /** The text of the first paragraph, made when the paragraph is empty. */
@@ -89,10 +95,24 @@ export function textOf(state: Uint8Array): string {
   return doc.getXmlFragment("page").toString();
 }
 
-export type RowOfBlock = { id: string; compound: string; constants?: string; amount: string; unit?: string; massFraction?: string; density?: string; lot?: string };
+export type RowOfBlock = {
+  id: string;
+  compound: string;
+  constants?: string;
+  amount: string;
+  unit?: string;
+  massFraction?: string;
+  density?: string;
+  lot?: string;
+};
 
 /** Puts an equilibrium block at the end of the page. */
-export function addBlock(page: Y.XmlFragment, id: string, rows: RowOfBlock[], attributes: Record<string, string> = {}): Y.XmlElement {
+export function addBlock(
+  page: Y.XmlFragment,
+  id: string,
+  rows: RowOfBlock[],
+  attributes: Record<string, string> = {},
+): Y.XmlElement {
   const block = new Y.XmlElement("equilibrium");
   for (const [name, value] of Object.entries({ id, ...attributes })) block.setAttribute(name, value);
   block.insert(
@@ -133,13 +153,21 @@ const pair = generateKeyPairSync("ed25519");
 const part = (value: string) => Buffer.from(value).toString("base64url");
 export const seal: Seal = async (manifest) => {
   const input = `${part(JSON.stringify({ alg: "EdDSA", kid: "test-key" }))}.${part(manifest)}`;
-  return { jws: `${input}.${signBytes(null, Buffer.from(input), pair.privateKey).toString("base64url")}`, kid: "test-key" };
+  return {
+    jws: `${input}.${signBytes(null, Buffer.from(input), pair.privateKey).toString("base64url")}`,
+    kid: "test-key",
+  };
 };
 
 /** The manifest that a JWS holds, once its signature has been verified. */
 export function openJws(jws: string): unknown {
   const [header, payload, signature] = jws.split(".");
-  const fits = verifyBytes(null, Buffer.from(`${header}.${payload}`), pair.publicKey, Buffer.from(signature ?? "", "base64url"));
+  const fits = verifyBytes(
+    null,
+    Buffer.from(`${header}.${payload}`),
+    pair.publicKey,
+    Buffer.from(signature ?? "", "base64url"),
+  );
   if (!fits) throw new Error("the signature does not fit");
   return JSON.parse(Buffer.from(payload ?? "", "base64url").toString());
 }
@@ -159,18 +187,34 @@ export async function witnessIt(db: Db, witness: Actor, revisionId: string, ackn
   await countersign(db, witness, { revisionId, shownHash, findingId, acknowledgement, seal });
 }
 
-export async function prepareToWitness(db: Db, witness: Actor, revisionId: string): Promise<{ shownHash: string; findingId: string }> {
+export async function prepareToWitness(
+  db: Db,
+  witness: Actor,
+  revisionId: string,
+): Promise<{ shownHash: string; findingId: string }> {
   const { contentSha256 } = await openRevision(db, witness, { revisionId });
   await markWhole(db, witness, { revisionId, contentSha256 });
   const finding = await checkRevision(db, witness, { revisionId });
   return { shownHash: contentSha256, findingId: finding.id };
 }
 
-const eventRow = z.object({ action: z.string(), person_id: z.string().nullable(), object_id: z.string(), detail: z.string() });
+const eventRow = z.object({
+  action: z.string(),
+  person_id: z.string().nullable(),
+  object_id: z.string(),
+  detail: z.string(),
+});
 
 /** The entry's events in order, with their details read. */
-export async function eventsOf(db: Db, entryId: string): Promise<{ action: string; personId: string | null; objectId: string; detail: Record<string, unknown> }[]> {
-  const rows = await readRows(db, eventRow, sql`select action, person_id, object_id, detail from events where entry_id = ${entryId} order by seq`);
+export async function eventsOf(
+  db: Db,
+  entryId: string,
+): Promise<{ action: string; personId: string | null; objectId: string; detail: Record<string, unknown> }[]> {
+  const rows = await readRows(
+    db,
+    eventRow,
+    sql`select action, person_id, object_id, detail from events where entry_id = ${entryId} order by seq`,
+  );
   return rows.map((row) => ({
     action: row.action,
     personId: row.person_id,
@@ -182,6 +226,10 @@ export async function eventsOf(db: Db, entryId: string): Promise<{ action: strin
 /** How many rows a table has, of one revision when it is named. */
 export async function countRows(db: Db, table: string, revisionId?: string): Promise<number> {
   const where = revisionId === undefined ? sql`` : sql`where revision_id = ${revisionId}`;
-  const [row] = await readRows(db, z.object({ count: z.number() }), sql`select count(*)::int as count from ${sql.identifier(table)} ${where}`);
+  const [row] = await readRows(
+    db,
+    z.object({ count: z.number() }),
+    sql`select count(*)::int as count from ${sql.identifier(table)} ${where}`,
+  );
   return row?.count ?? 0;
 }

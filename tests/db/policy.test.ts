@@ -123,12 +123,14 @@ describe("the policy", () => {
 
     it("hides what may not be read, and forbids what may be read but not done (ADM-04)", () => {
       const facts: Facts = EXPECTED[action];
+      const wrong: unknown[] = [];
       for (const each of cases()) {
         const code = refusalOf(action, each);
         const isReader = each.isMember && each.roles.some((role) => readers.includes(role));
-        if (facts.hidden !== undefined && !isReader) expect(code).toBe(facts.hidden);
-        else expect(code ?? "").not.toMatch(/not-found/);
+        const isHidden = code?.endsWith(".not-found") ?? false;
+        if (facts.hidden !== undefined && !isReader ? code !== facts.hidden : isHidden) wrong.push({ ...each, code });
       }
+      expect(wrong).toEqual([]);
     });
   });
 

@@ -40,7 +40,8 @@ async function migratedDump(): Promise<string> {
   const folder = join(tmpdir(), "counterleaf-tests");
   const path = join(folder, `${await migrationsHash()}.tar`);
   if (existsSync(path)) return path;
-  const client = await PGlite.create(embeddedOptions);
+  // Small segments of the write-ahead log: the dump, which every test file loads, is a third of the size.
+  const client = await PGlite.create({ ...embeddedOptions, initDbStartParams: ["--wal-segsize=1"] });
   await client.transaction((tx) =>
     applyMigrations({
       run: async (text) => {

@@ -2,6 +2,7 @@
 import { sql } from "drizzle-orm";
 import { z } from "zod";
 import { type Db, readRows } from "../../db/client.ts";
+import { newId } from "../../db/ids.ts";
 
 export async function countLibrary(db: Db): Promise<Record<string, number>> {
   const [row] = await readRows(
@@ -40,4 +41,17 @@ export async function allNames(db: Db): Promise<{ compound: string; kind: string
     z.object({ compound: z.string(), kind: z.string(), shown: z.string() }),
     sql`select compound_id as compound, kind, shown from compound_names order by compound_id, kind, shown`,
   );
+}
+
+/** A new session of the person with that e-mail. */
+export async function signInByEmail(db: Db, email: string): Promise<{ personId: string; sessionId: string }> {
+  const sessionId = newId();
+  const [person] = await readRows(
+    db,
+    z.object({ id: z.string() }),
+    sql`insert into session (id, token, user_id, expires_at) select ${sessionId}, ${newId()}, id, now() + interval '1 hour'
+      from "user" where email = ${email} returning user_id as id`,
+  );
+  if (person === undefined) throw new Error(`Nobody has the e-mail ${email}.`);
+  return { personId: person.id, sessionId };
 }

@@ -13,7 +13,7 @@ export default async function NotebooksPage() {
   const { read: notebooks } = await readForPage((actor, db) => listNotebooks(db, actor));
   const [only] = notebooks;
   return (
-    <Leaf>
+    <Leaf className="wide">
       <LeafTitle under="The notebooks whose member you are.">
         {notebooks.length === 1 ? `One notebook is open to you` : `${formatCount(notebooks.length)} notebooks are open to you`}
       </LeafTitle>

@@ -7,7 +7,7 @@ import { Counterfoil, StubHead, StubSection } from "../../../components/leaf/cou
 import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { StateMark } from "../../../components/leaf/state-mark.tsx";
 import { formatCount, formatDate, formatDateTime, formatPh } from "../../../components/format.ts";
-import { buttonClass } from "../../../components/ui/button.tsx";
+import { buttonClass } from "../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../components/ui/plain-table.tsx";
 import { Says } from "../../../components/ui/says.tsx";

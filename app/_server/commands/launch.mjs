@@ -1,4 +1,4 @@
-// npm run demo · npm start. Plain Node, because nothing may be installed yet. Says in one sentence what stands in the way.
+// npm run demo · npm start · npm run dev · npm run build. Plain Node, because nothing may be installed yet. Says in one sentence what stands in the way.
 import { spawn, spawnSync } from "node:child_process";
 import { createHash } from "node:crypto";
 import { existsSync, mkdirSync, readdirSync, readFileSync, statfsSync, statSync, writeFileSync } from "node:fs";
@@ -11,6 +11,7 @@ const mode = process.argv[2] ?? "";
 const SOURCES = ["app", "components", "editor", "chem", "db", "drizzle", "public"];
 const SETTINGS = ["package-lock.json", "next.config.mjs", "postcss.config.mjs", "tailwind.config.ts", "tsconfig.json", "proxy.ts", "instrumentation.ts", "instrumentation-node.ts"];
 const MIB = 1024 * 1024;
+const NEXT = join("node_modules", "next", "dist", "bin", "next");
 
 process.chdir(root);
 if (mode === "build") {
@@ -19,8 +20,26 @@ if (mode === "build") {
   build();
 } else if (mode === "demo" || mode === "start") {
   await launch(mode === "demo");
+} else if (mode === "dev") {
+  await develop();
 } else {
-  stop(`Say "demo", "start" or "build".`);
+  stop(`Say "demo", "start", "dev" or "build".`);
+}
+
+/** The development server, on a demo laboratory of its own unless the environment says otherwise. */
+async function develop() {
+  demandNode();
+  const port = readPort();
+  await demandPort(port);
+  install();
+  const isOwn = process.env.COUNTERLEAF_SECRET !== undefined;
+  const environment = isOwn ? process.env : { COUNTERLEAF_DEMO: "1", COUNTERLEAF_DATA: join(root, ".data", "dev"), ...process.env };
+  const server = spawn(process.execPath, [NEXT, "dev", "--port", String(port)], {
+    env: { ...environment, PORT: String(port), NEXT_TELEMETRY_DISABLED: "1" },
+    stdio: "inherit",
+  });
+  for (const signal of ["SIGINT", "SIGTERM"]) process.on(signal, () => server.kill(signal));
+  server.on("exit", (code) => process.exit(code ?? 0));
 }
 
 async function launch(demo) {
@@ -43,7 +62,7 @@ async function launch(demo) {
     const checked = tsx("app/_server/commands/check-settings.ts", environment);
     if (checked !== 0) process.exit(checked);
   }
-  const server = spawn(process.execPath, [join("node_modules", "next", "dist", "bin", "next"), "start", "--port", String(port)], {
+  const server = spawn(process.execPath, [NEXT, "start", "--port", String(port)], {
     env: environment,
     stdio: ["ignore", "pipe", "inherit"],
   });
@@ -121,7 +140,7 @@ function build() {
   const hash = sourcesHash();
   if (existsSync(join(".next", "BUILD_ID")) && existsSync(stamp) && readFileSync(stamp, "utf8") === hash) return;
   console.log("Building …");
-  const run = spawnSync(process.execPath, [join("node_modules", "next", "dist", "bin", "next"), "build"], {
+  const run = spawnSync(process.execPath, [NEXT, "build"], {
     env: { ...process.env, NODE_ENV: "production", NEXT_TELEMETRY_DISABLED: "1" },
     encoding: "utf8",
     maxBuffer: 64 * MIB,

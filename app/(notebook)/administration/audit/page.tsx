@@ -6,7 +6,7 @@ import { listPeople } from "../../../../db/people.ts";
 import { EVENT_ACTIONS } from "../../../../db/sentences.ts";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { formatDateTime } from "../../../../components/format.ts";
-import { buttonClass } from "../../../../components/ui/button.tsx";
+import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../../components/ui/plain-table.tsx";
 import { settings } from "../../../_server/env.ts";
@@ -40,7 +40,7 @@ export default async function AuditPage({ searchParams }: Props) {
   }));
   const { events, next } = read.page;
   return (
-    <Leaf>
+    <Leaf className="wide">
       <LeafTitle under="Append-only; each event carries the hash of the one before it. Times are the server's, in UTC. What a page says stays with those who may read it.">
         Audit trail
       </LeafTitle>

@@ -5,7 +5,7 @@ import { listOutbox } from "../../../../db/mail.ts";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { SideRow } from "../../../../components/leaf/side-row.tsx";
 import { formatDateTime } from "../../../../components/format.ts";
-import { buttonClass } from "../../../../components/ui/button.tsx";
+import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
 import { settings } from "../../../_server/env.ts";
 import { readForPage } from "../../../_server/page-read.ts";
@@ -19,7 +19,7 @@ export default async function OutboxPage({ searchParams }: { searchParams: Promi
   const { after } = await searchParams;
   const { actor, read } = await readForPage((person, db) => listOutbox(db, person, typeof after === "string" ? { after } : {}));
   return (
-    <Leaf>
+    <Leaf className="wide">
       <LeafTitle under="The demo posts nothing: what would have been mailed stands here.">Mail sent</LeafTitle>
       <Parts isDemo />
       {read.mails.length === 0 ? <EmptyState finding="No mail yet.">Invitations, forgotten passwords, signatures and returns bring some.</EmptyState> : null}

@@ -1,8 +1,8 @@
 "use server";
-import { closePerson, confirmIdentity, grantRole, revokeRole } from "../../../../db/people.ts";
+import { closePerson, grantRole, revokeRole } from "../../../../db/people.ts";
 import { beginResetFor, invite } from "../../../_server/account.ts";
 import { answer } from "../../../_server/answer.ts";
-import { identityWords, invitation, overPerson, roleChange } from "./schema.ts";
+import { invitation, overPerson, roleChange } from "./schema.ts";
 
 export async function invitePerson(raw: unknown) {
   return answer(invitation, raw, (actor, input, db) => invite(db, actor, input));
@@ -24,6 +24,3 @@ export async function startReset(raw: unknown) {
   return answer(overPerson, raw, (actor, input, db) => beginResetFor(db, actor, input));
 }
 
-export async function confirmPerson(raw: unknown) {
-  return answer(identityWords, raw, (actor, input, db) => confirmIdentity(db, actor, input));
-}

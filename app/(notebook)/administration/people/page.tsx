@@ -10,7 +10,8 @@ import { readForPage } from "../../../_server/page-read.ts";
 import { Parts } from "../_components/parts.tsx";
 import { InviteForm } from "./_components/invite-form.tsx";
 import { PersonActs, RoleTicks } from "./_components/person-acts.tsx";
-import { closeAccount, confirmPerson, giveRole, invitePerson, startReset, takeRole } from "./actions.ts";
+import { confirmPerson } from "../../actions.ts";
+import { closeAccount, giveRole, invitePerson, startReset, takeRole } from "./actions.ts";
 
 export const metadata: Metadata = { title: "People and roles" };
 

@@ -13,4 +13,3 @@ export const invitation = z.strictObject({
 });
 export const roleChange = z.strictObject({ personId, role: z.enum(ROLE_NAMES), reason });
 export const overPerson = z.strictObject({ personId, reason });
-export const identityWords = z.strictObject({ personId, how: reason });

@@ -1,17 +1,13 @@
 "use client";
 // A draft whose writer is here: the editor on the leaf, and on the counterfoil how it stands with what was typed.
-import { useQuery } from "@tanstack/react-query";
 import Link from "next/link";
-import { useRouter } from "next/navigation";
 import { type ReactNode, useState } from "react";
-import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/counterfoil.tsx";
+import { Counterfoil, StubHead } from "../../../../components/leaf/counterfoil.tsx";
 import { Leaf } from "../../../../components/leaf/leaf.tsx";
 import { PrintStub, PrintWatermark } from "../../../../components/leaf/print-stub.tsx";
 import { StateMark, type StateName } from "../../../../components/leaf/state-mark.tsx";
-import { formatDateTime } from "../../../../components/format.ts";
-import { strayQuery } from "../../../../components/query/revisions.ts";
-import { Button, buttonClass } from "../../../../components/ui/button.tsx";
-import { Says } from "../../../../components/ui/says.tsx";
+import { Button } from "../../../../components/ui/button.tsx";
+import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { PageEditor } from "../../../../editor/editor.tsx";
 import { SAVED, type SaveStatus, wordsOfStatus } from "../../../../editor/save-status.ts";
 import type { Answered } from "../../../_components/answered.ts";
@@ -24,8 +20,8 @@ type Props = {
   person: { id: string; name: string };
   decimalSign: "." | ",";
   timeZone: string;
-  head: { title: string; doneOn: string; lateReason: string };
-  recordedAt: string | null;
+  sessionKey: string;
+  recordedAt: string;
   maySign: boolean;
   /** a sentence, when the person may not */
   whyNot: string | null;
@@ -36,9 +32,9 @@ type Props = {
 
 const MARKS: Record<SaveStatus["kind"], StateName> = { saved: "saved", saving: "saving", offline: "offline", refused: "offline", "signed-out": "offline" };
 
-export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone, head, recordedAt, maySign, whyNot, notice, sections, enter }: Props) {
-  const router = useRouter();
+export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone, sessionKey, recordedAt, maySign, whyNot, notice, sections, enter }: Props) {
   const [status, setStatus] = useState<SaveStatus>(SAVED);
+  const [state, setState] = useState<string>("draft");
   const isSettled = status.kind === "saved" && status.unsavedFields === 0;
   return (
     <Leaf
@@ -48,10 +44,10 @@ export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone
             <StubHead
               number={label}
               of={of}
-              state={<StateMark state="draft" />}
+              state={<StateMark state={state === "signed" ? "signed" : "draft"} />}
               saved={<StateMark state={MARKS[status.kind]}>{wordsOfStatus(status)}</StateMark>}
               act={
-                maySign ? (
+                state !== "draft" ? undefined : maySign ? (
                   isSettled ? (
                     <Link className={buttonClass("first")} href={`/entries/${label}/sign`} prefetch={false}>
                       Sign as author
@@ -69,7 +65,6 @@ export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone
           }
         >
           {sections}
-          <Strays revisionId={revisionId} timeZone={timeZone} />
         </Counterfoil>
       }
       print={
@@ -82,46 +77,17 @@ export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone
       }
     >
       {notice}
-      {status.kind === "refused" ? (
-        <Says
-          kind="stop"
-          finding="What you typed last was not taken."
-          urgent
-          actions={
-            <Button kind="quiet" onClick={() => window.location.reload()}>
-              Load the page anew
-            </Button>
-          }
-        >
-          {status.detail ?? ""} Your words are kept for you: copy them from here before you load the page anew.
-        </Says>
-      ) : null}
       <PageEditor
         revisionId={revisionId}
         person={person}
         decimalSign={decimalSign}
         timeZone={timeZone}
-        head={head}
-        recordedAt={recordedAt}
+        sessionKey={sessionKey}
+        head={{ recordedAt }}
         onStatus={setStatus}
-        onClosed={() => router.refresh()}
+        onState={setState}
       />
       <SignInOver open={status.kind === "signed-out"} person={person.name} enter={enter} />
     </Leaf>
-  );
-}
-
-/** What this person sent when the revision was no longer a draft: refused, kept, theirs to copy. */
-function Strays({ revisionId, timeZone }: { revisionId: string; timeZone: string }) {
-  const { data = [] } = useQuery(strayQuery(revisionId));
-  if (data.length === 0) return null;
-  return (
-    <StubSection title="Kept for you">
-      {data.map(({ id, at, text }) => (
-        <p key={id} className="note">
-          {formatDateTime(at, timeZone)}: “{text}”
-        </p>
-      ))}
-    </StubSection>
   );
 }

@@ -11,9 +11,10 @@ import { PrintStub, PrintWatermark } from "../../../../components/leaf/print-stu
 import { Seal } from "../../../../components/leaf/seal-print.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
 import { formatDateTime, relativeDay } from "../../../../components/format.ts";
-import { buttonClass } from "../../../../components/ui/button.tsx";
+import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { Notice } from "../../../../components/ui/says.tsx";
 import { enter } from "../../../(auth)/sign-in/actions.ts";
+import { strayUpdates } from "../../../../db/updates.ts";
 import { readForPage } from "../../../_server/page-read.ts";
 import { DraftLeaf } from "../_components/draft-leaf.tsx";
 import { AssignWitness } from "../_components/assign-witness.tsx";
@@ -26,13 +27,23 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
   const { actor, read } = await readForPage(async (person, db) => {
     const entry = await readEntry(db, person, label, revision);
     const writes = entry.may.write;
-    const frozen = writes ? null : entry.signed === null ? await frozenDraft(db, person, entry.revision.id) : frozenContent(entry.signed.content);
+    const frozen = writes ? null : entry.signed === null ? await frozenDraft(db, person, entry.revision.id) : await frozenContent(db, entry.signed.content);
     const witnesses = entry.may.assignWitness ? await eligibleWitnesses(db, person, { entryId: entry.id }) : [];
-    return { entry, frozen, db, witnesses };
+    return { entry, frozen, db, witnesses, strays: await strayUpdates(db, person, entry.revision.id) };
   });
-  const { entry, frozen, db, witnesses } = read;
+  const { entry, frozen, db, witnesses, strays } = read;
   const sections = (
     <>
+      {strays.length === 0 ? null : (
+        <StubSection title="Kept for you">
+          <p className="note">You sent this when the revision was no longer a draft. It was not added; it is yours to copy into the next one.</p>
+          {strays.map(({ id, at, text }) => (
+            <p key={id}>
+              “{text}” <span className="faint">{formatDateTime(at, actor.timeZone)}</span>
+            </p>
+          ))}
+        </StubSection>
+      )}
       <SealsSection entry={entry} timeZone={actor.timeZone} />
       <PeopleSections entry={entry} />
       <DaysSection entry={entry} timeZone={actor.timeZone} />
@@ -41,7 +52,7 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
           <AssignWitness entryId={entry.id} now={entry.witness?.id ?? null} witnesses={witnesses} assign={assign} />
         </StubSection>
       ) : null}
-      <FilesSection files={frozen?.attachments ?? entry.attachments} />
+      <FilesSection files={frozen?.files ?? entry.attachments} />
       <RevisionsSection entry={entry} timeZone={actor.timeZone} />
       <StubSection title="What happened">
         <History db={db} actor={actor} entryId={entry.id} />
@@ -53,7 +64,7 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
 }
 
 function Draft({ entry, actor, sections }: { entry: EntryRead; actor: Actor; sections: ReactNode }) {
-  const { label, notebook, revision, head, recorded, may } = entry;
+  const { label, notebook, revision, createdAt, may } = entry;
   const previous = entry.revisions.find(({ number }) => number === revision.number - 1);
   return (
     <DraftLeaf
@@ -63,8 +74,8 @@ function Draft({ entry, actor, sections }: { entry: EntryRead; actor: Actor; sec
       person={{ id: actor.id, name: actor.printedName }}
       decimalSign={actor.decimalSign}
       timeZone={actor.timeZone}
-      head={head}
-      recordedAt={recorded.at}
+      sessionKey={actor.sessionId.slice(-8)}
+      recordedAt={createdAt.toISOString()}
       maySign={may.sign}
       whyNot={may.sign ? null : `${entry.author.printedName}, the author, signs.`}
       notice={
@@ -130,15 +141,7 @@ function FrozenLeaf({ entry, actor, frozen, sections }: FrozenProps) {
       }
     >
       {noticeOf(entry)}
-      <StaticPage
-        page={frozen.page}
-        head={frozen.head}
-        names={frozen.names}
-        blocks={frozen.blocks}
-        attachments={frozen.attachments}
-        timeZone={actor.timeZone}
-        decimalSign={actor.decimalSign}
-      />
+      <StaticPage page={frozen.page} head={frozen.head} names={frozen.names} blocks={frozen.blocks} attachments={frozen.attachments} decimalSign={actor.decimalSign} />
     </Leaf>
   );
 }

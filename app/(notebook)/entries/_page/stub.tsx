@@ -65,7 +65,7 @@ export function SealsSection({ entry, timeZone }: Props) {
     <>
       {entry.signatures.map(({ id, kind, printedName, at, meaning, contentSha256, acknowledgement }) => (
         <StubSection key={id}>
-          <Sealed hash={contentSha256} by={kind} name={printedName} role={kind} when={formatDateTime(at, timeZone, { seconds: true })} meaning={meaning} withoutHash>
+          <Sealed hash={contentSha256} by={kind} name={printedName} capacity={kind} when={formatDateTime(at, timeZone, { seconds: true })} meaning={meaning} withoutHash>
             {acknowledgement ? <p className="note">About what differs: “{acknowledgement}”</p> : null}
           </Sealed>
         </StubSection>
@@ -109,7 +109,7 @@ export function DaysSection({ entry, timeZone }: Props) {
         <br />
         Recorded {recorded.at === null ? "not yet" : formatDateTime(recorded.at, timeZone)}
       </p>
-      {recorded.late ? (
+      {recorded.isLate ? (
         <p>
           <StateMark state="overdue">Recorded late</StateMark>
           {head.lateReason === "" ? null : <span className="note"> {head.lateReason}</span>}

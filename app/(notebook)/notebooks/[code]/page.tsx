@@ -6,12 +6,12 @@ import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
 import { formatCount, formatDate } from "../../../../components/format.ts";
-import { buttonClass } from "../../../../components/ui/button.tsx";
+import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../../components/ui/plain-table.tsx";
 import { BeginEntry } from "../../../_components/begin-entry.tsx";
 import { readForPage } from "../../../_server/page-read.ts";
-import { begin } from "./actions.ts";
+import { begin } from "../../actions.ts";
 
 type Props = { params: Promise<{ code: string }>; searchParams: Promise<{ below?: string | string[] }> };
 

@@ -2,7 +2,7 @@
 import { useState } from "react";
 import { SelectField } from "../../../../../components/ui/select-field.tsx";
 import type { Answered } from "../../../../_components/answered.ts";
-import { ReasonedAct } from "../../_components/reasoned-act.tsx";
+import { ReasonedAct } from "../../../../_components/reasoned-act.tsx";
 
 type Act = (raw: unknown) => Promise<Answered<unknown>>;
 type Notebook = { id: string; title: string };

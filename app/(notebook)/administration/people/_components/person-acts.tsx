@@ -1,7 +1,7 @@
 "use client";
 import { StateMark } from "../../../../../components/leaf/state-mark.tsx";
 import type { Answered } from "../../../../_components/answered.ts";
-import { ReasonedAct } from "../../_components/reasoned-act.tsx";
+import { ReasonedAct } from "../../../../_components/reasoned-act.tsx";
 
 type Act = (raw: unknown) => Promise<Answered<unknown>>;
 

@@ -19,9 +19,13 @@ export async function generateMetadata({ params }: Props): Promise<Metadata> {
 /** The signed revision as its author signed it, for a witness who decides. */
 export default async function CountersignPage({ params }: Props) {
   const { label } = await params;
-  const { actor, read: entry } = await readForPage((person, db) => readEntry(db, person, label));
+  const { actor, read } = await readForPage(async (person, db) => {
+    const entry = await readEntry(db, person, label);
+    return { entry, frozen: entry.signed === null ? null : await frozenContent(db, entry.signed.content) };
+  });
+  const { entry, frozen } = read;
   const { signed, may } = entry;
-  if (signed === null || !may.countersign) redirect(`/entries/${label}`);
+  if (signed === null || frozen === null || !may.countersign) redirect(`/entries/${label}`);
   const { content, sha256 } = signed;
   return (
     <Countersign
@@ -44,7 +48,7 @@ export default async function CountersignPage({ params }: Props) {
           <Notice kind="info" finding={`You are reading revision ${entry.revision.number} exactly as ${entry.author.printedName} signed it.`}>
             It cannot be typed in any more.
           </Notice>
-          <StaticPage {...frozenContent(content)} timeZone={actor.timeZone} decimalSign={actor.decimalSign} />
+          <StaticPage {...frozen} decimalSign={actor.decimalSign} />
         </>
       }
       sections={

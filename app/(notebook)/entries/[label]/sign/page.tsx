@@ -23,10 +23,11 @@ export default async function SignPage({ params }: Props) {
   const { actor, read } = await readForPage(async (person, db) => {
     const entry = await readEntry(db, person, label);
     if (!entry.may.sign && entry.because.sign !== "signing.held") redirect(`/entries/${label}`);
-    if (!entry.may.sign) return { entry, toSign: null };
-    return { entry, toSign: await contentToSign(db, person, entry.revision.id) };
+    if (!entry.may.sign) return { entry, toSign: null, frozen: null };
+    const toSign = await contentToSign(db, person, entry.revision.id);
+    return { entry, toSign, frozen: await frozenContent(db, toSign.view.content) };
   });
-  const { entry, toSign } = read;
+  const { entry, toSign, frozen } = read;
   if (toSign === null) {
     return (
       <Notice kind="warn" finding="Signing is held.">
@@ -35,7 +36,6 @@ export default async function SignPage({ params }: Props) {
     );
   }
   const { content, hindrances } = toSign.view;
-  const frozen = frozenContent(content);
   return (
     <SignAsAuthor
       key={toSign.sha256}
@@ -54,7 +54,7 @@ export default async function SignPage({ params }: Props) {
           <Notice kind="info" finding="This is the page exactly as it will be signed.">
             Read it to its end; then the form at the counterfoil opens.
           </Notice>
-          <StaticPage {...frozen} timeZone={actor.timeZone} decimalSign={actor.decimalSign} />
+          <StaticPage {...frozen} decimalSign={actor.decimalSign} />
         </>
       }
       sections={

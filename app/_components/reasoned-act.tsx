@@ -5,11 +5,11 @@ import { useRouter } from "next/navigation";
 import { type ReactNode, useState } from "react";
 import { useForm } from "react-hook-form";
 import { z } from "zod";
-import { Button, type ButtonKind } from "../../../../components/ui/button.tsx";
-import { Dialog } from "../../../../components/ui/dialog.tsx";
-import { Says } from "../../../../components/ui/says.tsx";
-import { TextArea } from "../../../../components/ui/text-field.tsx";
-import { type Answered, showProblem } from "../../../_components/answered.ts";
+import { Button, type ButtonKind } from "../../components/ui/button.tsx";
+import { Dialog } from "../../components/ui/dialog.tsx";
+import { Says } from "../../components/ui/says.tsx";
+import { TextArea } from "../../components/ui/text-field.tsx";
+import { type Answered, showProblem } from "./answered.ts";
 
 const reasoned = z.object({
   reason: z.string().trim().min(3, { error: "Write why, in a few words." }).max(500, { error: "At most 500 characters." }),
