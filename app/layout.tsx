@@ -15,9 +15,13 @@ export const viewport: Viewport = { width: "device-width", initialScale: 1, colo
 
 /** Every page is made for one request: its nonce differs each time, and most of them read the database. */
 export default async function RootLayout({ children }: { children: ReactNode }) {
-  await headers();
+  const nonce = (await headers()).get("x-nonce") ?? undefined;
   return (
     <html lang="en">
+      <head>
+        {/* react-aria-components read it for the two style elements that they put in. */}
+        <meta name="csp-nonce" nonce={nonce} />
+      </head>
       <body>
         <SkipToLeaf />
         <Providers>{children}</Providers>

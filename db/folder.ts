@@ -1,6 +1,6 @@
 // The folder of the embedded store belongs to one process at a time: a second one would corrupt it without a word.
 // On Linux the holder listens on an abstract socket named after the folder's real path, which dies with its process and
-// tells who asks who it is; elsewhere a lock file names the process and when it started.
+// tells those who ask who it is; elsewhere a lock file names the process and when it started.
 import { execFileSync } from "node:child_process";
 import { createHash } from "node:crypto";
 import { constants } from "node:fs";
@@ -86,11 +86,20 @@ async function holdSocket(folder: string, real: string): Promise<() => Promise<v
   try {
     await listening(server, name);
   } catch (fault) {
-    if (codeOf(fault) === "EADDRINUSE") throw new FolderInUse(folder, await ask(name));
+    if (codeOf(fault) === "EADDRINUSE") throw new FolderInUse(folder, (await ask(name)) ?? (await readNote(real)));
     throw fault;
   }
   server.unref();
+  // The socket is the lock. The note only names the holder when it is too busy to answer.
+  await writeFile(join(real, NOTE), self);
   return () => new Promise((done) => server.close(() => done()));
+}
+
+const NOTE = "holder.json";
+
+async function readNote(real: string): Promise<Holder | null> {
+  const text = await readFile(join(real, NOTE), "utf8").catch(() => "");
+  return parseHolder(text);
 }
 
 function listening(server: Server, name: string): Promise<void> {

@@ -61,7 +61,7 @@ export function Page({ revisionId, person, provider, line, decimalSign, timeZone
       extensions: [
         Together.configure({ doc: provider.doc, awareness: provider.awareness }),
         ...extensionsOfPage(pageViews),
-        Suggest.configure({ keys }),
+        Suggest.configure({ onKey: (event) => keys.current?.(event) ?? false }),
         Tidy.configure({ placeholder: "Write here. “/” puts something in, “@” a compound.", onRefusedPaste: announce }),
         TableKeys,
       ],

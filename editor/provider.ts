@@ -19,6 +19,9 @@ export type PageLine = Omit<SaveStatus, "unsavedFields"> & {
   refusedCode: string | null;
 };
 
+/** What an EventSource is needed for. */
+export type EventStream = EventTarget & { readonly readyState: number; close(): void };
+
 export type ProviderOptions = {
   revisionId: string;
   person: { id: string; name: string };
@@ -27,7 +30,7 @@ export type ProviderOptions = {
   onChange: (line: PageLine) => void;
   /** tests hand in their own */
   ask?: typeof globalThis.fetch;
-  openEvents?: (path: string) => EventSource;
+  openEvents?: (path: string) => EventStream;
 };
 
 export type Provider = {
@@ -58,7 +61,7 @@ type TimerName = "merge" | "stream" | "presence" | "takeover" | "hidden";
 export function openProvider(options: ProviderOptions): Provider {
   const { revisionId, person, outbox, onChange } = options;
   const ask = options.ask ?? globalThis.fetch.bind(globalThis);
-  const openEvents = options.openEvents ?? ((path) => new EventSource(path));
+  const openEvents = options.openEvents ?? ((path: string): EventStream => new EventSource(path));
   const base = `/api/revisions/${encodeURIComponent(revisionId)}`;
   const tab = newName();
   const letGo = holdTab(tab);
@@ -76,7 +79,7 @@ export function openProvider(options: ProviderOptions): Provider {
   let isGone = false;
   let resendsAll = false;
   let streamRetryMs = FIRST_RETRY_MS;
-  let events: EventSource | null = null;
+  let events: EventStream | null = null;
   let told = "";
 
   const sender = makeSender({

@@ -1,8 +1,8 @@
 "use client";
-// What every client component may count on: one query cache, and one voice for polite announcements.
+// What every client component may count on: one query cache, the words and links of the basic parts, and one polite voice.
 import { QueryClient, QueryClientProvider } from "@tanstack/react-query";
 import { type ReactNode, useState } from "react";
-import { LiveRegion } from "../../components/ui/live-region.tsx";
+import { UiProvider } from "../../components/ui/ui-provider.tsx";
 
 export function Providers({ children }: { children: ReactNode }) {
   const [client] = useState(
@@ -10,7 +10,7 @@ export function Providers({ children }: { children: ReactNode }) {
   );
   return (
     <QueryClientProvider client={client}>
-      <LiveRegion>{children}</LiveRegion>
+      <UiProvider>{children}</UiProvider>
     </QueryClientProvider>
   );
 }

@@ -19,7 +19,11 @@ import { hashPassword } from "./secrets.ts";
 import { accountOf, isPasswordOf, type SignedIn, signIn } from "./sign-in.ts";
 
 /** Changes one's own password: the present one is asked for, every other session ends. */
-export async function changePassword(db: Db, actor: Actor, input: { currentPassword: string; newPassword: string }): Promise<void> {
+export async function changePassword(
+  db: Db,
+  actor: Actor,
+  input: { currentPassword: string; newPassword: string },
+): Promise<void> {
   demandGoodPassword(input.newPassword, [actor.printedName, actor.email]);
   await demandPresentPassword(db, actor, input.currentPassword);
   const { internalAdapter } = await (await auth()).$context;
@@ -31,7 +35,9 @@ export async function changePassword(db: Db, actor: Actor, input: { currentPassw
 /** Counted like every other wrong password, but said at the field. */
 async function demandPresentPassword(db: Db, actor: Actor, password: string): Promise<void> {
   try {
-    await guardPassword(db, { account: accountOf(actor.email), door: "sign-in", actor }, () => isPasswordOf(actor.id, password));
+    await guardPassword(db, { account: accountOf(actor.email), door: "sign-in", actor }, () =>
+      isPasswordOf(actor.id, password),
+    );
   } catch (error) {
     if (!(error instanceof Refused) || error.code !== "account.wrong-password") throw error;
     throw new BadInput({ currentPassword: "This is not the password that you have now." });
@@ -99,7 +105,11 @@ export type JoinInput = { code: string; email?: string; printedName?: string; pa
 /** Uses a one-time code up, makes the account with the password that its owner chose, and signs in. */
 export async function join(db: Db, asked: Headers, input: JoinInput): Promise<SignedIn> {
   const invited = await readInvitation(db, input.code);
-  demandGoodPassword(input.password, [invited.printedName ?? input.printedName ?? "", invited.email ?? input.email ?? ""], "password");
+  demandGoodPassword(
+    input.password,
+    [invited.printedName ?? input.printedName ?? "", invited.email ?? input.email ?? ""],
+    "password",
+  );
   const { email } = await acceptInvitation(db, {
     code: input.code,
     email: input.email,

@@ -16,7 +16,10 @@ const TOUCH_EVERY_MS = 60_000;
 
 /** The person behind these headers, or null. */
 export async function findActor(asked: Headers, activity: Activity = "touch"): Promise<Actor | null> {
-  const found = await (await auth()).api.getSession({ headers: sessionHeaders(asked), query: { disableRefresh: true } });
+  const found = await (await auth()).api.getSession({
+    headers: sessionHeaders(asked),
+    query: { disableRefresh: true },
+  });
   if (found === null) return null;
   const idleMs = Date.now() - found.session.updatedAt.getTime();
   if (idleMs > settings().sessionIdleMinutes * 60_000) {

@@ -56,7 +56,10 @@ export async function answerStranger<S extends z.ZodType, T>(
 }
 
 /** A route for members of the house. What is not a Response is sent as JSON. `activity: "none"` does not keep a session awake. */
-export function route(handle: (actor: Actor, asked: Asked) => Promise<unknown>, activity: Activity = "touch"): RouteHandler {
+export function route(
+  handle: (actor: Actor, asked: Asked) => Promise<unknown>,
+  activity: Activity = "touch",
+): RouteHandler {
   return openRoute(async (asked, say) => {
     const actor = await requireActor(asked.request.headers, activity);
     say(actor);
@@ -69,19 +72,28 @@ export function openRoute(handle: (asked: Asked, say: (actor: Actor) => void) =>
   return async (request, context) => {
     const answered = await translated(`${request.method} ${new URL(request.url).pathname}`, async (say, requestId) => {
       if (!["GET", "HEAD"].includes(request.method)) demandOwnPage(request.headers);
-      const params = Object.fromEntries(Object.entries((await context.params) ?? {}).flatMap(([name, value]) => (value === undefined ? [] : [[name, value]])));
+      const params = Object.fromEntries(
+        Object.entries((await context.params) ?? {}).flatMap(([name, value]) =>
+          value === undefined ? [] : [[name, value]],
+        ),
+      );
       const value = await handle({ request, params, db: await database(), requestId }, say);
       return { value, requestId };
     });
     if (!answered.ok) return problemResponse(answered.problem);
     const { value, requestId } = answered.value;
-    return value instanceof Response ? withHeaders(value, requestId) : withHeaders(Response.json(value ?? null), requestId);
+    return value instanceof Response
+      ? withHeaders(value, requestId)
+      : withHeaders(Response.json(value ?? null), requestId);
   };
 }
 
 /** A problem as RFC 9457 wants it. */
 export function problemResponse(problem: ShownProblem): Response {
-  const response = new Response(JSON.stringify(problem), { status: problem.status, headers: { "content-type": "application/problem+json" } });
+  const response = new Response(JSON.stringify(problem), {
+    status: problem.status,
+    headers: { "content-type": "application/problem+json" },
+  });
   if (problem.status === 429 || problem.status === 503) response.headers.set("retry-after", String(waitOf(problem)));
   return withHeaders(response, problem.requestId);
 }
@@ -90,13 +102,21 @@ export function demandOwnPage(asked: Headers): void {
   if (!isFromOwnPage(asked, settings().origins)) throw new Refused("request.cross-site");
 }
 
-async function translated<T>(what: string, work: (say: (actor: Actor) => void, requestId: string) => Promise<T>): Promise<Answer<T>> {
+async function translated<T>(
+  what: string,
+  work: (say: (actor: Actor) => void, requestId: string) => Promise<T>,
+): Promise<Answer<T>> {
   const requestId = newId();
   const began = performance.now();
   if (processState().closing) return { ok: false, problem: closingOf(requestId) };
   let actor: Actor | null = null;
-  const told = (fields: object) =>
-    ({ requestId, what, person: actor?.id, elapsedMs: Math.round(performance.now() - began), ...fields });
+  const told = (fields: object) => ({
+    requestId,
+    what,
+    person: actor?.id,
+    elapsedMs: Math.round(performance.now() - began),
+    ...fields,
+  });
   return counted(async () => {
     try {
       const value = await work((known) => {
@@ -123,7 +143,13 @@ async function translated<T>(what: string, work: (say: (actor: Actor) => void, r
 
 /** A refusal of rights is an event. The transaction of the refused verb is gone, so it is written in one of its own. */
 async function keepRefusal(actor: Actor | null, refused: Refused, what: string, requestId: string): Promise<void> {
-  if (actor === null || !/[.](forbidden|self|author|contributor|not-author|held|not-found|assigned-to-another|began-reset)$/.test(refused.code)) return;
+  if (
+    actor === null ||
+    !/[.](forbidden|self|author|contributor|not-author|held|not-found|assigned-to-another|began-reset)$/.test(
+      refused.code,
+    )
+  )
+    return;
   try {
     const db = await database();
     // Somebody who tries a thousand addresses writes thirty events a minute, not a thousand.
@@ -148,7 +174,11 @@ function waitOf(problem: ShownProblem): number {
 }
 
 function withHeaders(response: Response, requestId: string): Response {
-  const own = { "cache-control": "no-store", "content-security-policy": ROUTE_POLICY, ...commonHeaders(settings().url.startsWith("https:")) };
+  const own = {
+    "cache-control": "no-store",
+    "content-security-policy": ROUTE_POLICY,
+    ...commonHeaders(settings().url.startsWith("https:")),
+  };
   for (const [name, value] of Object.entries(own)) if (!response.headers.has(name)) response.headers.set(name, value);
   response.headers.set("x-request-id", requestId);
   return response;

@@ -46,7 +46,11 @@ function make(db: Db, set: Settings) {
       sendResetPassword: ({ user, token }) => sendResetLink(db, set, user, token),
     },
     // expiresAt is the absolute end; updatedAt says when the person was last there.
-    session: { expiresIn: set.sessionAbsoluteHours * 3600, disableSessionRefresh: true, cookieCache: { enabled: false } },
+    session: {
+      expiresIn: set.sessionAbsoluteHours * 3600,
+      disableSessionRefresh: true,
+      cookieCache: { enabled: false },
+    },
     // Only a hash of a reset link's code is kept.
     verification: { storeIdentifier: "hashed" },
     trustedOrigins: set.origins,

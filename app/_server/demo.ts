@@ -9,5 +9,6 @@ import { signingSeal } from "./signing-key.ts";
 export async function seedDemoOnce(db: Db): Promise<void> {
   const began = performance.now();
   const done = await seedDemo(db, { hashPassword, seal: await signingSeal() });
-  if (done === "seeded") log.info({ elapsedMs: Math.round(performance.now() - began) }, "the demo laboratory is set up");
+  if (done === "seeded")
+    log.info({ elapsedMs: Math.round(performance.now() - began) }, "the demo laboratory is set up");
 }

@@ -30,8 +30,16 @@ export function fileResponse(file: FileToRead): Response {
 
 /** The name as RFC 6266 and RFC 8187 write it: plain letters for old readers, all of it for the rest; never a path, never a quote. */
 export function disposition(kind: "inline" | "attachment", name: string): string {
-  const plain = name.normalize("NFKD").replace(/[^\x20-\x7e]/g, "").replace(/["\\%/;]/g, "_").trim() || "file";
-  const exact = encodeURIComponent(name.replace(/\p{Cs}/gu, "_")).replace(/['()*]/g, (character) => `%${character.charCodeAt(0).toString(16).toUpperCase()}`);
+  const plain =
+    name
+      .normalize("NFKD")
+      .replace(/[^\x20-\x7e]/g, "")
+      .replace(/["\\%/;]/g, "_")
+      .trim() || "file";
+  const exact = encodeURIComponent(name.replace(/\p{Cs}/gu, "_")).replace(
+    /['()*]/g,
+    (character) => `%${character.charCodeAt(0).toString(16).toUpperCase()}`,
+  );
   return `${kind}; filename="${plain}"; filename*=UTF-8''${exact}`;
 }
 

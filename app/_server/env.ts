@@ -41,23 +41,42 @@ const whole = (name: string, fallback: number, least: number, most: number) =>
 
 const environment = z
   .object({
-    COUNTERLEAF_DEMO: z.enum(["0", "1"], { error: "COUNTERLEAF_DEMO is 1 (the invented demo laboratory) or 0." }).default("0"),
+    COUNTERLEAF_DEMO: z
+      .enum(["0", "1"], { error: "COUNTERLEAF_DEMO is 1 (the invented demo laboratory) or 0." })
+      .default("0"),
     COUNTERLEAF_SECRET: z
       .string()
-      .min(32, { error: "COUNTERLEAF_SECRET needs at least 32 characters, made by chance, and kept: the signing key is closed with it." })
+      .min(32, {
+        error:
+          "COUNTERLEAF_SECRET needs at least 32 characters, made by chance, and kept: the signing key is closed with it.",
+      })
       .max(512, { error: "COUNTERLEAF_SECRET has at most 512 characters." })
       .optional(),
-    COUNTERLEAF_URL: z.string().refine(isAddress, {
-      error: "COUNTERLEAF_URL is the public address, https://host or http://host:port, with nothing after it.",
-    }).optional(),
+    COUNTERLEAF_URL: z
+      .string()
+      .refine(isAddress, {
+        error: "COUNTERLEAF_URL is the public address, https://host or http://host:port, with nothing after it.",
+      })
+      .optional(),
     COUNTERLEAF_DATA: z.string().min(1, { error: "COUNTERLEAF_DATA is a folder." }).optional(),
     DATABASE_URL: z
       .string()
-      .regex(/^postgres(ql)?:\/\//, { error: "DATABASE_URL begins with postgres:// (the embedded database is chosen by COUNTERLEAF_DATA)." })
+      .regex(/^postgres(ql)?:\/\//, {
+        error: "DATABASE_URL begins with postgres:// (the embedded database is chosen by COUNTERLEAF_DATA).",
+      })
       .optional(),
-    SMTP_URL: z.string().regex(/^smtps?:\/\//, { error: "SMTP_URL begins with smtp:// or smtps://." }).optional(),
-    MAIL_FROM: z.string().regex(/^[^\r\n]*@[^\r\n]*$/, { error: "MAIL_FROM is the sender's address." }).optional(),
-    PORT: z.string().regex(/^\d{1,5}$/, { error: "PORT is a number." }).default("3000"),
+    SMTP_URL: z
+      .string()
+      .regex(/^smtps?:\/\//, { error: "SMTP_URL begins with smtp:// or smtps://." })
+      .optional(),
+    MAIL_FROM: z
+      .string()
+      .regex(/^[^\r\n]*@[^\r\n]*$/, { error: "MAIL_FROM is the sender's address." })
+      .optional(),
+    PORT: z
+      .string()
+      .regex(/^\d{1,5}$/, { error: "PORT is a number." })
+      .default("3000"),
     PROXY_HOPS: whole("PROXY_HOPS", 0, 0, 10),
     COUNTERLEAF_SESSION_IDLE_MINUTES: whole("COUNTERLEAF_SESSION_IDLE_MINUTES", 60, 1, 1440),
     COUNTERLEAF_SESSION_HOURS: whole("COUNTERLEAF_SESSION_HOURS", 12, 1, 168),
@@ -73,7 +92,8 @@ const environment = z
     if (given.COUNTERLEAF_DATA !== undefined && given.DATABASE_URL !== undefined) {
       say("COUNTERLEAF_DATA and DATABASE_URL are both set: choose one store.");
     }
-    if (given.SMTP_URL !== undefined && given.MAIL_FROM === undefined) say("MAIL_FROM is missing: SMTP_URL is set, and mail needs a sender.");
+    if (given.SMTP_URL !== undefined && given.MAIL_FROM === undefined)
+      say("MAIL_FROM is missing: SMTP_URL is set, and mail needs a sender.");
     if (demo && given.DATABASE_URL !== undefined && given.COUNTERLEAF_SECRET === undefined) {
       say("COUNTERLEAF_SECRET is missing: a demo on a PostgreSQL server has no folder to keep one in.");
     }

@@ -19,7 +19,8 @@ export async function takeFile(actor: Actor, { request, db }: Pick<Asked, "reque
   const ticket = ticketOf(actor, request);
   await demandRate(db, `upload:${ticket.key}`, TRIES_A_LINK, 3_600_000);
   const announced = request.headers.get("content-length");
-  if (announced !== null && Number(announced) > ticket.size + FORM_BYTES) throw new Refused("attachment.length-differs", { announced: ticket.size });
+  if (announced !== null && Number(announced) > ticket.size + FORM_BYTES)
+    throw new Refused("attachment.length-differs", { announced: ticket.size });
   if (request.body === null) throw new Refused("attachment.empty");
   try {
     const part = await readFilePart(request.body, request.headers.get("content-type"));
@@ -52,7 +53,13 @@ export async function answerSdk(request: Request, answer: Response): Promise<Res
   const problem = problemWords.parse(await answer.json());
   const headers = new Headers(answer.headers);
   headers.set("content-type", "application/json");
-  return new Response(JSON.stringify({ error: problem.detail === undefined ? problem.title : `${problem.title}. ${problem.detail}`, problem }), { headers });
+  return new Response(
+    JSON.stringify({
+      error: problem.detail === undefined ? problem.title : `${problem.title}. ${problem.detail}`,
+      problem,
+    }),
+    { headers },
+  );
 }
 
 const problemWords = z.looseObject({ title: z.string(), detail: z.string().optional() });

@@ -15,7 +15,11 @@ const ASIDE_MS = 60_000;
 
 /** Starts the loops; what comes back stops them and waits for the round that is running. */
 export function startJobs(): () => Promise<void> {
-  const loops = [repeat("derive", DERIVE_EVERY_MS, deriveChanged), repeat("mail", MAIL_EVERY_MS, sendMail), repeat("sweep", SWEEP_EVERY_MS, sweep)];
+  const loops = [
+    repeat("derive", DERIVE_EVERY_MS, deriveChanged),
+    repeat("mail", MAIL_EVERY_MS, sendMail),
+    repeat("sweep", SWEEP_EVERY_MS, sweep),
+  ];
   return async () => {
     await Promise.all(loops.map((stop) => stop()));
   };

@@ -67,7 +67,8 @@ declare global {
 export async function openStream(actor: Actor, revisionId: string, request: Request): Promise<Response> {
   const { db } = await store();
   const hub = await openHub();
-  if (countStreams(hub, actor.id) >= STREAMS_A_PERSON) throw new Refused("request.too-many", { limit: STREAMS_A_PERSON, seconds: 10 });
+  if (countStreams(hub, actor.id) >= STREAMS_A_PERSON)
+    throw new Refused("request.too-many", { limit: STREAMS_A_PERSON, seconds: 10 });
   const { stream, body } = makeStream(actor, revisionId, request, hub, db);
   try {
     const state = await pageState(db, actor, revisionId);
@@ -124,13 +125,15 @@ function hear(hub: Hub, db: Db, payload: string): void {
   }
   const heard = parsed.data;
   if ("person" in heard) {
-    for (const set of hub.streams.values()) for (const stream of set) if (stream.actor.id === heard.person) void recheck(hub, db, stream);
+    for (const set of hub.streams.values())
+      for (const stream of set) if (stream.actor.id === heard.person) void recheck(hub, db, stream);
     return;
   }
   if ("presence" in heard) keepPresence(hub, heard.revision, heard.key, heard.presence);
   for (const stream of hub.streams.get(heard.revision) ?? []) {
     if ("presence" in heard) sendOrHold(stream, "presence", { bytes: heard.presence });
-    else if ("state" in heard) void readOn(hub, db, stream).then(() => sendOrHold(stream, "state", { state: heard.state }));
+    else if ("state" in heard)
+      void readOn(hub, db, stream).then(() => sendOrHold(stream, "state", { state: heard.state }));
     else void readOn(hub, db, stream);
   }
 }
@@ -157,7 +160,8 @@ async function readOn(hub: Hub, db: Db, stream: Stream): Promise<void> {
       }
     }
   } catch (error) {
-    if (!(error instanceof Refused)) log.error({ error, revision: stream.revisionId }, "an event stream could not read on");
+    if (!(error instanceof Refused))
+      log.error({ error, revision: stream.revisionId }, "an event stream could not read on");
     stream.end(error instanceof Refused ? "rights" : "fault");
   } finally {
     stream.isReading = false;
@@ -270,7 +274,9 @@ function keepPresence(hub: Hub, revisionId: string, key: string, bytes: string):
 
 function freshPresence(hub: Hub, revisionId: string): string[] {
   const since = Date.now() - PRESENCE_KEPT_MS;
-  return [...(hub.presence.get(revisionId)?.values() ?? [])].filter((kept) => kept.at >= since).map((kept) => kept.bytes);
+  return [...(hub.presence.get(revisionId)?.values() ?? [])]
+    .filter((kept) => kept.at >= since)
+    .map((kept) => kept.bytes);
 }
 
 function countStreams(hub: Hub, personId: string): number {

@@ -2,7 +2,16 @@
 import "server-only";
 import { type DestinationStream, type Logger, pino } from "pino";
 
-const SECRET_FIELDS = ["password", "newPassword", "currentPassword", "secret", "token", "cookie", "authorization", "jws"];
+const SECRET_FIELDS = [
+  "password",
+  "newPassword",
+  "currentPassword",
+  "secret",
+  "token",
+  "cookie",
+  "authorization",
+  "jws",
+];
 
 /** The log of this process. `COUNTERLEAF_LOG` sets the level; tests are silent. */
 export const log: Logger = createLog(process.env.COUNTERLEAF_LOG ?? (process.env.VITEST ? "silent" : "info"));
@@ -24,7 +33,10 @@ function errorFields(error: unknown) {
   const cause = error.cause instanceof Error ? { name: error.cause.name, code: codeOf(error.cause) } : undefined;
   // drizzle's own message repeats the statement with its parameters.
   const message = error.message.startsWith("Failed query") ? "a statement failed" : error.message;
-  const stack = error.stack?.split("\n").filter((line) => line.trimStart().startsWith("at ")).slice(0, 12);
+  const stack = error.stack
+    ?.split("\n")
+    .filter((line) => line.trimStart().startsWith("at "))
+    .slice(0, 12);
   return { name: error.name, message, code: codeOf(error), cause, stack };
 }
 

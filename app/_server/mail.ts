@@ -34,7 +34,13 @@ export async function sendWaiting(db: Db, settings: Settings): Promise<number> {
   try {
     for (const letter of waiting) {
       try {
-        await post.sendMail({ from: settings.mailFrom, to: letter.to, subject: letter.subject, text: letter.text, messageId: `<${letter.id}@counterleaf>` });
+        await post.sendMail({
+          from: settings.mailFrom,
+          to: letter.to,
+          subject: letter.subject,
+          text: letter.text,
+          messageId: `<${letter.id}@counterleaf>`,
+        });
         await markSent(db, letter.id);
         sent += 1;
       } catch (error) {

@@ -16,7 +16,9 @@ const BLANK_LINE = Buffer.from("\r\n\r\n");
  * missing (the sender stopped half-way) or when another part follows.
  */
 export async function readFilePart(body: ReadableStream<Uint8Array>, contentType: string | null): Promise<FilePart> {
-  const boundary = /^multipart\/form-data\s*;(?:.*;)?\s*boundary=(?:"([^"]{1,70})"|([^\s;"]{1,70}))\s*(?:;.*)?$/i.exec(contentType ?? "");
+  const boundary = /^multipart\/form-data\s*;(?:.*;)?\s*boundary=(?:"([^"]{1,70})"|([^\s;"]{1,70}))\s*(?:;.*)?$/i.exec(
+    contentType ?? "",
+  );
   const mark = boundary?.[1] ?? boundary?.[2];
   if (mark === undefined) throw new MalformedForm("not a form with a boundary");
   const source = new Window(body.getReader());
@@ -37,7 +39,12 @@ async function readHeaders(source: Window): Promise<Map<string, string>> {
     if (end >= 0) {
       const lines = source.take(end).toString("utf8").split("\r\n");
       source.take(BLANK_LINE.length);
-      return new Map(lines.map((line) => [line.slice(0, line.indexOf(":")).trim().toLowerCase(), line.slice(line.indexOf(":") + 1).trim()]));
+      return new Map(
+        lines.map((line) => [
+          line.slice(0, line.indexOf(":")).trim().toLowerCase(),
+          line.slice(line.indexOf(":") + 1).trim(),
+        ]),
+      );
     }
     if (source.held.length > HEADER_LIMIT) throw new MalformedForm("the part's headers are too long");
     if (!(await source.more())) throw new MalformedForm("the form ends in its headers");

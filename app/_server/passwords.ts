@@ -28,7 +28,12 @@ const COMMON = new Set(
     .filter((word) => word !== ""),
 );
 
-const ROWS = ["abcdefghijklmnopqrstuvwxyz", "01234567890123456789", "qwertyuiopasdfghjklzxcvbnm", "qwertzuiopasdfghjklyxcvbnm"];
+const ROWS = [
+  "abcdefghijklmnopqrstuvwxyz",
+  "01234567890123456789",
+  "qwertyuiopasdfghjklzxcvbnm",
+  "qwertzuiopasdfghjklyxcvbnm",
+];
 
 /** What is wrong with a new password, or null. `own` are the person's name and e-mail. */
 export function passwordFault(password: string, own: string[]): PasswordFault | null {
@@ -46,7 +51,8 @@ export function passwordFault(password: string, own: string[]): PasswordFault | 
 
 /** The sentence at the field. */
 export function passwordSentence(fault: PasswordFault): string {
-  if (fault === "too-short") return `A password has at least ${PASSWORD_LEAST} characters; several words with spaces are fine.`;
+  if (fault === "too-short")
+    return `A password has at least ${PASSWORD_LEAST} characters; several words with spaces are fine.`;
   if (fault === "too-long") return `A password has at most ${PASSWORD_MOST} characters.`;
   if (fault === "own-name") return "This password is little more than your own name. Choose another.";
   return "This password is a common one and quickly guessed. Choose another.";
@@ -55,7 +61,14 @@ export function passwordSentence(fault: PasswordFault): string {
 /** At most four characters (or one short word) again and again. */
 function isRepetition(text: string): boolean {
   for (let unit = 1; unit <= Math.min(6, text.length / 2); unit += 1) {
-    if (text === text.slice(0, unit).repeat(Math.ceil(text.length / unit)).slice(0, text.length)) return true;
+    if (
+      text ===
+      text
+        .slice(0, unit)
+        .repeat(Math.ceil(text.length / unit))
+        .slice(0, text.length)
+    )
+      return true;
   }
   return false;
 }

@@ -9,7 +9,10 @@ const state = z.record(z.string(), z.unknown()).nullable();
 const user = z.record(z.string(), z.unknown());
 
 /** The same word in the actor's name, with the number of the tab that it is about. Refuses what speaks for more than one tab. */
-export function namePresence(actor: Pick<Actor, "id" | "printedName">, bytes: Uint8Array): { tab: number; bytes: Uint8Array } {
+export function namePresence(
+  actor: Pick<Actor, "id" | "printedName">,
+  bytes: Uint8Array,
+): { tab: number; bytes: Uint8Array } {
   const [count, afterCount] = readNumber(bytes, 0);
   const [tab] = readNumber(bytes, afterCount);
   if (count !== 1) throw new Refused("update.invalid", { reason: "A tab speaks for itself only." });
@@ -20,7 +23,10 @@ export function namePresence(actor: Pick<Actor, "id" | "printedName">, bytes: Ui
   }
 }
 
-function named(actor: Pick<Actor, "id" | "printedName">, told: Record<string, unknown> | null): Record<string, unknown> | null {
+function named(
+  actor: Pick<Actor, "id" | "printedName">,
+  told: Record<string, unknown> | null,
+): Record<string, unknown> | null {
   if (told === null) return null;
   const given = user.safeParse(told.user);
   return { ...told, user: { ...(given.success ? given.data : {}), id: actor.id, name: actor.printedName } };

@@ -54,8 +54,13 @@ export function pathId(params: Record<string, string | string[]>, missing: Refus
   return parsed.data;
 }
 
-export async function readJson<S extends z.ZodType>(request: Request, schema: S, limit = JSON_LIMIT): Promise<z.output<S>> {
-  if (!/^application\/json\s*(;|$)/i.test(request.headers.get("content-type") ?? "")) throw new Refused("request.unsupported", { expected: "application/json" });
+export async function readJson<S extends z.ZodType>(
+  request: Request,
+  schema: S,
+  limit = JSON_LIMIT,
+): Promise<z.output<S>> {
+  if (!/^application\/json\s*(;|$)/i.test(request.headers.get("content-type") ?? ""))
+    throw new Refused("request.unsupported", { expected: "application/json" });
   const text = new TextDecoder().decode(await readBytes(request, limit));
   return parse(schema, parseText(text));
 }
@@ -68,7 +73,8 @@ export async function refuseLong(request: Request, limit: number): Promise<Reque
 
 export async function readOctets(request: Request, limit: number): Promise<Uint8Array<ArrayBuffer>> {
   const type = request.headers.get("content-type") ?? "";
-  if (!/^application\/octet-stream\s*(;|$)/i.test(type)) throw new Refused("request.unsupported", { expected: "application/octet-stream" });
+  if (!/^application\/octet-stream\s*(;|$)/i.test(type))
+    throw new Refused("request.unsupported", { expected: "application/octet-stream" });
   return readBytes(request, limit);
 }
 

@@ -5,7 +5,13 @@ import { CompactSign, calculateJwkThumbprint, exportJWK, generateKeyPair, import
 import { z } from "zod";
 
 const okp = z.strictObject({ kty: z.literal("OKP"), crv: z.literal("Ed25519"), x: z.string(), d: z.string() });
-const sealedText = z.strictObject({ v: z.literal(1), salt: z.string(), iv: z.string(), tag: z.string(), text: z.string() });
+const sealedText = z.strictObject({
+  v: z.literal(1),
+  salt: z.string(),
+  iv: z.string(),
+  tag: z.string(),
+  text: z.string(),
+});
 
 export type NewKey = { kid: string; publicJwk: string; sealedPrivate: string };
 export type Seal = (manifest: string) => Promise<{ jws: string; kid: string }>;
@@ -16,7 +22,11 @@ export async function makeSigningKey(secret: string): Promise<NewKey> {
   const publicJwk = await exportJWK(pair.publicKey);
   const kid = await calculateJwkThumbprint(publicJwk);
   const whole: JWK = { ...publicJwk, kid, alg: "EdDSA", use: "sig" };
-  return { kid, publicJwk: JSON.stringify(whole), sealedPrivate: close(JSON.stringify(await exportJWK(pair.privateKey)), kid, secret) };
+  return {
+    kid,
+    publicJwk: JSON.stringify(whole),
+    sealedPrivate: close(JSON.stringify(await exportJWK(pair.privateKey)), kid, secret),
+  };
 }
 
 /** Opens the key and returns what signs a manifest: a compact JWS (RFC 7515, EdDSA by RFC 8037). Throws when the secret is another one. */
@@ -42,13 +52,18 @@ function close(text: string, kid: string, secret: string): string {
   const cipher = createCipheriv("aes-256-gcm", wrappingKey(secret, salt), iv).setAAD(Buffer.from(kid));
   const closed = Buffer.concat([cipher.update(text, "utf8"), cipher.final()]);
   const parts = { salt, iv, tag: cipher.getAuthTag(), text: closed };
-  return JSON.stringify({ v: 1, ...Object.fromEntries(Object.entries(parts).map(([name, bytes]) => [name, bytes.toString("base64url")])) });
+  return JSON.stringify({
+    v: 1,
+    ...Object.fromEntries(Object.entries(parts).map(([name, bytes]) => [name, bytes.toString("base64url")])),
+  });
 }
 
 function open(sealed: string, kid: string, secret: string): string {
   const parts = sealedText.parse(JSON.parse(sealed));
   const bytes = (text: string) => Buffer.from(text, "base64url");
-  const decipher = createDecipheriv("aes-256-gcm", wrappingKey(secret, bytes(parts.salt)), bytes(parts.iv), { authTagLength: 16 })
+  const decipher = createDecipheriv("aes-256-gcm", wrappingKey(secret, bytes(parts.salt)), bytes(parts.iv), {
+    authTagLength: 16,
+  })
     .setAAD(Buffer.from(kid))
     .setAuthTag(bytes(parts.tag));
   try {

@@ -11,9 +11,16 @@ export async function searchCsv(db: Db, actor: Actor, query: SearchQuery, asked:
   const rows: ReturnType<typeof csvCells>[] = [];
   for await (const hit of searchRows(db, actor, query)) rows.push(csvCells(hit));
   await db.transaction((tx) =>
-    record(tx, actor, "search.downloaded", { objectKind: "person", objectId: actor.id, detail: { count: rows.length, query: asked.slice(0, 500) } }),
+    record(tx, actor, "search.downloaded", {
+      objectKind: "person",
+      objectId: actor.id,
+      detail: { count: rows.length, query: asked.slice(0, 500) },
+    }),
   );
   return new Response(csvText(CSV_HEADER, rows), {
-    headers: { "content-type": "text/csv; charset=utf-8; header=present", "content-disposition": 'attachment; filename="counterleaf-search.csv"' },
+    headers: {
+      "content-type": "text/csv; charset=utf-8; header=present",
+      "content-disposition": 'attachment; filename="counterleaf-search.csv"',
+    },
   });
 }

@@ -13,7 +13,8 @@ export async function closeAll(): Promise<void> {
   const until = Date.now() + DRAIN_MS;
   // The store was opened first, so its closer comes last: by then the streams have ended and nothing is in flight.
   for (const [index, close] of closers.entries()) {
-    if (index === closers.length - 1) while (state.inFlight > 0 && Date.now() < until) await new Promise((done) => setTimeout(done, 20));
+    if (index === closers.length - 1)
+      while (state.inFlight > 0 && Date.now() < until) await new Promise((done) => setTimeout(done, 20));
     try {
       await close();
     } catch (error) {

@@ -44,7 +44,9 @@ export async function signOut(db: Db, asked: Headers, actor: Actor): Promise<{ c
 
 /** Asks a signed-in person for their password once more (SGN-02). Refuses `signing.wrong-password` or `signing.locked`. */
 export async function demandPassword(db: Db, actor: Actor, password: string): Promise<void> {
-  await guardPassword(db, { account: accountOf(actor.email), door: "signing", actor }, () => isPasswordOf(actor.id, password));
+  await guardPassword(db, { account: accountOf(actor.email), door: "signing", actor }, () =>
+    isPasswordOf(actor.id, password),
+  );
 }
 
 /** The spelling that accounts are counted and found by. */
@@ -55,10 +57,16 @@ export function accountOf(email: string): string {
 async function trySignIn(db: Db, asked: Headers, email: string, password: string): Promise<SignedIn | undefined> {
   const { api, $context } = await auth();
   try {
-    const { headers, response } = await api.signInEmail({ body: { email, password }, headers: sessionHeaders(asked), returnHeaders: true });
+    const { headers, response } = await api.signInEmail({
+      body: { email, password },
+      headers: sessionHeaders(asked),
+      returnHeaders: true,
+    });
     const session = await (await $context).internalAdapter.findSession(response.token);
-    const actor = session === null ? null : await actorOf(db, { personId: session.user.id, sessionId: session.session.id });
-    if (actor !== null) return { person: { id: actor.id, printedName: actor.printedName }, cookies: headers.getSetCookie() };
+    const actor =
+      session === null ? null : await actorOf(db, { personId: session.user.id, sessionId: session.session.id });
+    if (actor !== null)
+      return { person: { id: actor.id, printedName: actor.printedName }, cookies: headers.getSetCookie() };
     // The account is closed: the password was right, and nothing may tell.
     if (session !== null) await (await $context).internalAdapter.deleteSession(session.session.token);
     return undefined;

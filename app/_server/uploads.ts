@@ -22,7 +22,15 @@ const APP_ID = "counterleaf";
 const LINK_SECONDS = 600;
 
 /** What a signed address says. */
-export type UploadTicket = { key: string; name: string; size: number; type: string; revisionId: string; personId: string; text: string };
+export type UploadTicket = {
+  key: string;
+  name: string;
+  size: number;
+  type: string;
+  revisionId: string;
+  personId: string;
+  text: string;
+};
 
 const builder = createUploadthing({ errorFormatter: (error) => ({ message: error.message }) });
 
@@ -50,7 +58,13 @@ const router = {
     .onUploadComplete(({ metadata }) => storedShape.parse(metadata)),
 };
 
-const storedShape = z.object({ id: z.string(), name: z.string(), size: z.number(), sha256: z.string(), type: z.string().nullable() });
+const storedShape = z.object({
+  id: z.string(),
+  name: z.string(),
+  size: z.number(),
+  sha256: z.string(),
+  type: z.string().nullable(),
+});
 type Stored = z.infer<typeof storedShape>;
 
 const handlers = new Map<string, (request: Request) => Promise<Response>>();
@@ -114,12 +128,22 @@ export async function finishUpload(origin: string, ticket: UploadTicket, stored:
     ufsUrl: url,
     fileHash: stored.sha256,
   };
-  const metadata: Stored = { id: stored.id, name: stored.name, size: stored.size, sha256: stored.sha256, type: stored.type };
+  const metadata: Stored = {
+    id: stored.id,
+    name: stored.name,
+    size: stored.size,
+    sha256: stored.sha256,
+    type: stored.type,
+  };
   const body = JSON.stringify({ status: "uploaded", metadata, file, origin: origin + INGEST_PATH });
   const answer = await sdkHandler(origin)(
     new Request(`${origin}${UPLOAD_PATH}?slug=attachment`, {
       method: "POST",
-      headers: { "content-type": "application/json", "uploadthing-hook": "callback", "x-uploadthing-signature": sign(body) },
+      headers: {
+        "content-type": "application/json",
+        "uploadthing-hook": "callback",
+        "x-uploadthing-signature": sign(body),
+      },
       body,
     }),
   );
@@ -147,7 +171,14 @@ const playService: typeof fetch = async (input, init) => {
 /** The SDK's errors carry one sentence: the problem's own. */
 function spoken(refused: Refused): UploadThingError {
   const { title, detail, status } = problemOf(refused.code, "");
-  const code = status === 404 ? "NOT_FOUND" : status === 413 ? "TOO_LARGE" : status === 401 || status === 403 ? "FORBIDDEN" : "BAD_REQUEST";
+  const code =
+    status === 404
+      ? "NOT_FOUND"
+      : status === 413
+        ? "TOO_LARGE"
+        : status === 401 || status === 403
+          ? "FORBIDDEN"
+          : "BAD_REQUEST";
   return new UploadThingError({ code, message: detail === undefined ? `${title}.` : `${title}. ${detail}` });
 }
 

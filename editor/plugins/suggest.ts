@@ -11,13 +11,13 @@ const LONGEST = 60;
 
 export type SuggestKeys = (event: KeyboardEvent) => boolean;
 
-export const Suggest = Extension.create<{ keys: { current: SuggestKeys | null } }>({
+export const Suggest = Extension.create<{ onKey: SuggestKeys }>({
   name: "suggest",
   // Its keys come before those that split a paragraph or leave a list.
   priority: 900,
-  addOptions: () => ({ keys: { current: null } }),
+  addOptions: () => ({ onKey: () => false }),
   addProseMirrorPlugins() {
-    const { keys } = this.options;
+    const { onKey } = this.options;
     return [
       new Plugin<SuggestState>({
         key: suggestKey,
@@ -41,7 +41,7 @@ export const Suggest = Extension.create<{ keys: { current: SuggestKeys | null } 
               view.dispatch(view.state.tr.setMeta(suggestKey, "close"));
               return true;
             }
-            return keys.current?.(event) ?? false;
+            return onKey(event);
           },
         },
       }),

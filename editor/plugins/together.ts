@@ -1,6 +1,14 @@
 // y-prosemirror's own plug-ins, as one Tiptap extension: the shared page, the carets of others, and an undo of one's own changes.
 import { Extension } from "@tiptap/core";
-import { redoCommand, undoCommand, yCursorPlugin, ySyncPlugin, ySyncPluginKey, yUndoPlugin } from "y-prosemirror";
+import {
+  initProseMirrorDoc,
+  redoCommand,
+  undoCommand,
+  yCursorPlugin,
+  ySyncPlugin,
+  ySyncPluginKey,
+  yUndoPlugin,
+} from "y-prosemirror";
 import type { Awareness } from "y-protocols/awareness";
 import * as Y from "yjs";
 import { colourOf } from "../colours.ts";
@@ -8,11 +16,24 @@ import { colourOf } from "../colours.ts";
 /** Changes of the fields above the page carry this origin, so that they are undone like typing. */
 export const HEAD_ORIGIN = Symbol("head");
 
-export const Together = Extension.create<{ doc: Y.Doc | null; awareness: Awareness | null }>({
+type Mapping = ReturnType<typeof initProseMirrorDoc>["mapping"];
+
+export const Together = Extension.create<
+  { doc: Y.Doc | null; awareness: Awareness | null },
+  { mapping: Mapping | undefined }
+>({
   name: "together",
   // Before everything else: the page has to be there when other plug-ins look at it.
   priority: 1000,
   addOptions: () => ({ doc: null, awareness: null }),
+  addStorage: () => ({ mapping: undefined }),
+  onBeforeCreate() {
+    if (this.options.doc === null) return;
+    // The editor begins with the page as it stands, so that nothing is drawn twice and the caret has a place from the start.
+    const { doc, mapping } = initProseMirrorDoc(this.options.doc.getXmlFragment("page"), this.editor.schema);
+    this.editor.options.content = doc;
+    this.storage.mapping = mapping;
+  },
   addProseMirrorPlugins() {
     const { doc, awareness } = this.options;
     if (doc === null || awareness === null) return [];
@@ -22,7 +43,7 @@ export const Together = Extension.create<{ doc: Y.Doc | null; awareness: Awarene
       captureTransaction: (transaction) => transaction.meta.get("addToHistory") !== false,
     });
     return [
-      ySyncPlugin(page),
+      ySyncPlugin(page, { mapping: this.storage.mapping }),
       yCursorPlugin(awareness, { cursorBuilder: buildCaret, selectionBuilder: buildChoice }),
       yUndoPlugin({ undoManager }),
     ];

@@ -60,9 +60,9 @@ export function blockOfNode(node: PageNode): EquilibriumBlock {
     id: textAttribute(node, "id") || "unnamed",
     title: textAttribute(node, "title"),
     volume: textAttribute(node, "volume"),
-    volumeUnit: textAttribute(node, "volumeUnit"),
-    temperatureC: textAttribute(node, "temperatureC"),
-    activity: textAttribute(node, "activity"),
+    volumeUnit: withDefault(node, "volumeUnit", "L"),
+    temperatureC: withDefault(node, "temperatureC", "25"),
+    activity: withDefault(node, "activity", "davies"),
     measuredPH: textAttribute(node, "measuredPH"),
     show: textAttribute(node, "show"),
     rows: (node.content ?? []).map((row, index) => ({
@@ -70,10 +70,15 @@ export function blockOfNode(node: PageNode): EquilibriumBlock {
       compound: textAttribute(row, "compound"),
       constants: textAttribute(row, "constants"),
       amount: textAttribute(row, "amount"),
-      unit: textAttribute(row, "unit"),
+      unit: withDefault(row, "unit", "mol/L"),
       massFraction: textAttribute(row, "massFraction"),
       density: textAttribute(row, "density"),
       lot: textAttribute(row, "lot"),
     })),
   });
+}
+
+/** The schema's own default where the JSON leaves an attribute out; a page that was validated has them all. */
+function withDefault(node: PageNode, name: string, fallback: string): string {
+  return node.attrs?.[name] === undefined ? fallback : textAttribute(node, name);
 }

@@ -33,7 +33,8 @@ it("takes what a real installation needs and fills in the rest", () => {
 
 it("says everything that is missing at once, by name", () => {
   const said = faults({}).join("\n");
-  for (const name of ["COUNTERLEAF_SECRET", "COUNTERLEAF_URL", "COUNTERLEAF_DATA", "DATABASE_URL"]) expect(said).toContain(name);
+  for (const name of ["COUNTERLEAF_SECRET", "COUNTERLEAF_URL", "COUNTERLEAF_DATA", "DATABASE_URL"])
+    expect(said).toContain(name);
 });
 
 it.each([
@@ -49,7 +50,9 @@ it.each([
 });
 
 it("never says a secret back", () => {
-  expect(faults({ ...real, COUNTERLEAF_SECRET: "short-and-secret", COUNTERLEAF_URL: "x" }).join("\n")).not.toContain("short-and-secret");
+  expect(faults({ ...real, COUNTERLEAF_SECRET: "short-and-secret", COUNTERLEAF_URL: "x" }).join("\n")).not.toContain(
+    "short-and-secret",
+  );
 });
 
 it("makes a secret for the demo once and keeps it for its owner alone", () => {

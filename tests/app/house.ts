@@ -77,7 +77,10 @@ export async function openHouse(): Promise<House> {
   };
 }
 
-type Handler = (request: Request, context: { params: Promise<Record<string, string | string[] | undefined> | undefined> }) => Promise<Response>;
+type Handler = (
+  request: Request,
+  context: { params: Promise<Record<string, string | string[] | undefined> | undefined> },
+) => Promise<Response>;
 export type Question = {
   cookie?: string;
   method?: string;
@@ -98,7 +101,12 @@ export function ask(handler: Handler, path: string, question: Question = {}): Pr
   if (json !== undefined) headers.set("content-type", "application/json");
   const method = question.method ?? (json === undefined && body === undefined ? "GET" : "POST");
   if (method !== "GET" && method !== "HEAD" && origin !== null) headers.set("origin", origin);
-  const request = new Request(ORIGIN + path, { method, headers, body: json === undefined ? body : JSON.stringify(json), signal });
+  const request = new Request(ORIGIN + path, {
+    method,
+    headers,
+    body: json === undefined ? body : JSON.stringify(json),
+    signal,
+  });
   return handler(request, { params: Promise.resolve(params) });
 }
 

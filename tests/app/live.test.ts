@@ -5,9 +5,9 @@ import { openStreams } from "../../app/_server/live.ts";
 import { POST as authenticate } from "../../app/api/auth/[...all]/route.ts";
 import { GET as events } from "../../app/api/revisions/[id]/events/route.ts";
 import { POST as presence } from "../../app/api/revisions/[id]/presence/route.ts";
+import { newId } from "../../db/ids.ts";
 import { removeMember } from "../../db/notebooks.ts";
 import { revokeRole } from "../../db/people.ts";
-import { newId } from "../../db/ids.ts";
 import { appendUpdate, pageState } from "../../db/updates.ts";
 import { ask, type House, openHouse, PASSWORD, signInCookie, type Visitor } from "./house.ts";
 import { addParagraph, openPage, wordsOf } from "./page.ts";
@@ -30,12 +30,22 @@ afterAll(async () => {
 });
 
 type Told = { event: string; data: Record<string, unknown> };
-type Listener = { status: number; next(event: string): Promise<Told>; told: Told[]; ended: Promise<void>; leave(): void };
+type Listener = {
+  status: number;
+  next(event: string): Promise<Told>;
+  told: Told[];
+  ended: Promise<void>;
+  leave(): void;
+};
 
 async function listen(visitor: Pick<Visitor, "cookie">, id = revisionId): Promise<Listener> {
   const controller = new AbortController();
   open.push(controller);
-  const answer = await ask(events, `/api/revisions/${id}/events`, { cookie: visitor.cookie, params: { id }, signal: controller.signal });
+  const answer = await ask(events, `/api/revisions/${id}/events`, {
+    cookie: visitor.cookie,
+    params: { id },
+    signal: controller.signal,
+  });
   const told: Told[] = [];
   const waiting = new Set<() => void>();
   const ended = read(answer, (each) => {
@@ -74,8 +84,11 @@ async function listen(visitor: Pick<Visitor, "cookie">, id = revisionId): Promis
 async function read(answer: Response, tell: (told: Told) => void): Promise<void> {
   if (answer.status !== 200 || answer.body === null) return;
   let text = "";
-  for await (const chunk of answer.body.pipeThrough(new TextDecoderStream())) {
-    text += chunk;
+  const reader = answer.body.pipeThrough(new TextDecoderStream()).getReader();
+  for (;;) {
+    const { done, value } = await reader.read();
+    if (done) return;
+    text += value;
     const blocks = text.split("\n\n");
     text = blocks.pop() ?? "";
     for (const block of blocks) {
@@ -180,7 +193,11 @@ describe("presence", () => {
     return Buffer.from(bytes).toString("base64");
   }
   const tell = (visitor: Visitor, bytes: string) =>
-    ask(presence, `/api/revisions/${revisionId}/presence`, { cookie: visitor.cookie, json: { bytes }, params: { id: revisionId } });
+    ask(presence, `/api/revisions/${revisionId}/presence`, {
+      cookie: visitor.cookie,
+      json: { bytes },
+      params: { id: revisionId },
+    });
 
   it("is told to the page's readers, in the name that the server knows (COL-11)", async () => {
     const listener = await listen(second);
@@ -197,7 +214,12 @@ describe("presence", () => {
   });
 
   it("refuses what speaks for others, is too long, or is nothing", async () => {
-    for (const bytes of [Buffer.from([2, 1, 1, 1]).toString("base64"), Buffer.alloc(5000).toString("base64"), "AAAA", "not base64!"]) {
+    for (const bytes of [
+      Buffer.from([2, 1, 1, 1]).toString("base64"),
+      Buffer.alloc(5000).toString("base64"),
+      "AAAA",
+      "not base64!",
+    ]) {
       expect((await tell(author, bytes)).status).toBeGreaterThanOrEqual(400);
     }
   });

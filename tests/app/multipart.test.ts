@@ -23,7 +23,9 @@ async function gather(body: Uint8Array, step = 7): Promise<Uint8Array> {
 
 const form = (content: Buffer | string, end = "\r\n------mark--\r\n") =>
   Buffer.concat([
-    Buffer.from('------mark\r\nContent-Disposition: form-data; name="file"; filename="a.txt"\r\nContent-Type: text/plain\r\n\r\n'),
+    Buffer.from(
+      '------mark\r\nContent-Disposition: form-data; name="file"; filename="a.txt"\r\nContent-Type: text/plain\r\n\r\n',
+    ),
     Buffer.from(content),
     Buffer.from(end),
   ]);
@@ -52,9 +54,15 @@ it("keeps an empty file empty", async () => {
 
 it.each([
   ["a form that stops half-way", form("abc", "")],
-  ["a second part", form("abc", '\r\n------mark\r\nContent-Disposition: form-data; name="file"\r\n\r\nx\r\n------mark--\r\n')],
+  [
+    "a second part",
+    form("abc", '\r\n------mark\r\nContent-Disposition: form-data; name="file"\r\n\r\nx\r\n------mark--\r\n'),
+  ],
   ["something after the form", form("abc", "\r\n------mark--\r\nmore")],
-  ["another field", Buffer.from('------mark\r\nContent-Disposition: form-data; name="files"\r\n\r\nabc\r\n------mark--\r\n')],
+  [
+    "another field",
+    Buffer.from('------mark\r\nContent-Disposition: form-data; name="files"\r\n\r\nabc\r\n------mark--\r\n'),
+  ],
   ["headers without end", Buffer.concat([Buffer.from("------mark\r\n"), Buffer.alloc(40_000, "x")])],
   ["no boundary at its beginning", Buffer.from("abc")],
   ["nothing", Buffer.alloc(0)],

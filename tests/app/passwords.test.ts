@@ -9,7 +9,7 @@ it.each([
   ["abababababab", "common"],
   ["aaaaaaaaaaaaaaa", "common"],
   ["mnopqrstuvwxyz", "common"],
-  ["poiuytrewqmnbvcxz".slice(0, 10) + "12", null],
+  ["poiuytrewq12", null],
   ["Okafor.Okafor1", "own-name"],
   ["four plain words here", null],
   ["pässwörter mögen ümlaute", null],

@@ -39,17 +39,26 @@ describe("bodies", () => {
 
   it("takes JSON that fits and names each field that does not", async () => {
     const shape = z.strictObject({ a: z.number(), b: z.object({ c: z.string() }) });
-    await expect(readJson(post('{"a":1,"b":{"c":"d"}}', "application/json"), shape)).resolves.toEqual({ a: 1, b: { c: "d" } });
-    const refused = await readJson(post('{"a":"1","b":{}}', "application/json"), shape).catch((error: unknown) => error);
+    await expect(readJson(post('{"a":1,"b":{"c":"d"}}', "application/json"), shape)).resolves.toEqual({
+      a: 1,
+      b: { c: "d" },
+    });
+    const refused = await readJson(post('{"a":"1","b":{}}', "application/json"), shape).catch(
+      (error: unknown) => error,
+    );
     expect(refused).toBeInstanceOf(BadInput);
     expect(refused).toMatchObject({ fields: { a: expect.any(String), "b.c": expect.any(String) } });
   });
 
   it("refuses a form, text that is not JSON, and what is too long however it is announced", async () => {
     const any = z.unknown();
-    await expect(readJson(post("a=1", "application/x-www-form-urlencoded"), any)).rejects.toThrow("request.unsupported");
+    await expect(readJson(post("a=1", "application/x-www-form-urlencoded"), any)).rejects.toThrow(
+      "request.unsupported",
+    );
     await expect(readJson(post("{", "application/json"), any)).rejects.toThrow(BadInput);
-    await expect(readJson(post(`"${"x".repeat(70_000)}"`, "application/json"), any)).rejects.toThrow("request.too-large");
+    await expect(readJson(post(`"${"x".repeat(70_000)}"`, "application/json"), any)).rejects.toThrow(
+      "request.too-large",
+    );
     const streamed = { duplex: "half" };
     const unannounced = new Request("https://notebook.example/api/x", {
       ...streamed,

@@ -24,5 +24,7 @@ it("does not open under another secret, nor in another key's row", async () => {
   const key = await makeSigningKey(SECRET);
   const other = await makeSigningKey(SECRET);
   await expect(openSeal(key, `${SECRET}.`)).rejects.toThrow("COUNTERLEAF_SECRET");
-  await expect(openSeal({ kid: key.kid, sealedPrivate: other.sealedPrivate }, SECRET)).rejects.toThrow("COUNTERLEAF_SECRET");
+  await expect(openSeal({ kid: key.kid, sealedPrivate: other.sealedPrivate }, SECRET)).rejects.toThrow(
+    "COUNTERLEAF_SECRET",
+  );
 });

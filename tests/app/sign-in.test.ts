@@ -65,7 +65,9 @@ describe("signing in", () => {
   it("closes both doors when failures at either make five, for twenty guesses at once as well (SGN-05)", async () => {
     const brandt = await house.visitor("L. Brandt", ["researcher"], true);
     for (let times = 0; times < 4; times += 1) {
-      await expect(demandPassword(house.store.db, brandt.actor, "wrong again and again")).rejects.toThrow("signing.wrong-password");
+      await expect(demandPassword(house.store.db, brandt.actor, "wrong again and again")).rejects.toThrow(
+        "signing.wrong-password",
+      );
     }
     const many = await Promise.all(Array.from({ length: 20 }, () => signIn(brandt.email, "wrong at the other door")));
     expect(many.filter((answer) => answer.status === 401)).toHaveLength(1);
@@ -80,7 +82,17 @@ describe("signing in", () => {
   });
 
   it("opens none of the sign-in library's own paths", async () => {
-    for (const path of ["sign-up/email", "sign-in/email", "verify-password", "change-password", "get-session", "list-sessions", "update-user", "reset-password", "ok"]) {
+    for (const path of [
+      "sign-up/email",
+      "sign-in/email",
+      "verify-password",
+      "change-password",
+      "get-session",
+      "list-sessions",
+      "update-user",
+      "reset-password",
+      "ok",
+    ]) {
       const params = { all: path.split("/") };
       const json = { email: okafor.email, password: PASSWORD, name: "x", newPassword: "x".repeat(20), token: "x" };
       expect((await ask(POST, `/api/auth/${path}`, { cookie: okafor.cookie, json, params })).status).toBe(404);

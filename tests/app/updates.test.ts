@@ -29,7 +29,13 @@ async function change(words: string): Promise<Uint8Array<ArrayBuffer>> {
 
 function send(bytes: Uint8Array<ArrayBuffer>, question: Question = {}, id = revisionId): Promise<Response> {
   const headers = { "content-type": "application/octet-stream", "x-update-id": newId(), ...question.headers };
-  return ask(post, `/api/revisions/${id}/updates`, { cookie: author.cookie, body: bytes, params: { id }, ...question, headers });
+  return ask(post, `/api/revisions/${id}/updates`, {
+    cookie: author.cookie,
+    body: bytes,
+    params: { id },
+    ...question,
+    headers,
+  });
 }
 
 async function pageNow(): Promise<string> {
@@ -72,7 +78,12 @@ describe("posting an update", () => {
     for (const [answer, status, code] of answers) {
       expect(answer.status, code).toBe(status);
       expect(answer.headers.get("content-type")).toBe("application/problem+json");
-      expect(await answer.json()).toMatchObject({ status, code, type: `/problems/${code}`, requestId: expect.any(String) });
+      expect(await answer.json()).toMatchObject({
+        status,
+        code,
+        type: `/problems/${code}`,
+        requestId: expect.any(String),
+      });
     }
     expect(await pageNow()).toBe(before);
   });
@@ -80,7 +91,11 @@ describe("posting an update", () => {
   it("tells no difference between a hidden page, a missing one and an address that is none (ADM-04)", async () => {
     const bytes = await change("hidden");
     const seen: object[] = [];
-    for (const [id, cookie] of [[revisionId, outsider.cookie], [newId(), author.cookie], ["../../secret", author.cookie]] as const) {
+    for (const [id, cookie] of [
+      [revisionId, outsider.cookie],
+      [newId(), author.cookie],
+      ["../../secret", author.cookie],
+    ] as const) {
       const answer = await send(bytes, { cookie }, id);
       const { requestId: _, ...body } = await answer.json();
       seen.push({ status: answer.status, ...body });
@@ -112,9 +127,15 @@ describe("posting an update", () => {
   });
 
   it("lists what was kept apart for its writer only, and nothing for a draft", async () => {
-    const answer = await ask(stray, `/api/revisions/${revisionId}/stray`, { cookie: author.cookie, params: { id: revisionId } });
+    const answer = await ask(stray, `/api/revisions/${revisionId}/stray`, {
+      cookie: author.cookie,
+      params: { id: revisionId },
+    });
     expect(await answer.json()).toEqual({ updates: [] });
-    const hidden = await ask(stray, `/api/revisions/${revisionId}/stray`, { cookie: outsider.cookie, params: { id: revisionId } });
+    const hidden = await ask(stray, `/api/revisions/${revisionId}/stray`, {
+      cookie: outsider.cookie,
+      params: { id: revisionId },
+    });
     expect(hidden.status).toBe(404);
   });
 });

@@ -4,9 +4,9 @@ import { disposition } from "../../app/_server/download.ts";
 import { GET as download } from "../../app/api/attachments/[id]/route.ts";
 import { POST as strike } from "../../app/api/attachments/[id]/strike/route.ts";
 import { HEAD as head, PUT as put } from "../../app/api/ingest/[...key]/route.ts";
-import { GET as configuration, POST as begin } from "../../app/api/uploadthing/route.ts";
+import { POST as begin, GET as configuration } from "../../app/api/uploadthing/route.ts";
 import { listAttachments } from "../../db/attachments.ts";
-import { ask, type House, openHouse, ORIGIN, type Visitor } from "./house.ts";
+import { ask, type House, ORIGIN, openHouse, type Visitor } from "./house.ts";
 
 let house: House;
 let author: Visitor;
@@ -73,7 +73,10 @@ describe("an upload", () => {
     const { status, body } = await send(author, url, file);
     expect(status, JSON.stringify(body)).toBe(200);
     const sha256 = createHash("sha256").update(PNG).digest("hex");
-    expect(body).toMatchObject({ fileHash: sha256, serverData: { name: file.name, size: PNG.length, sha256, type: "image/png" } });
+    expect(body).toMatchObject({
+      fileHash: sha256,
+      serverData: { name: file.name, size: PNG.length, sha256, type: "image/png" },
+    });
     const back = await fetchFile(colleague, body.serverData.id);
     expect(Buffer.from(await back.arrayBuffer()).equals(PNG)).toBe(true);
     expect(await kept()).toContain(file.name);
@@ -81,7 +84,8 @@ describe("an upload", () => {
 
   it("takes 5 MiB in rows and gives them back byte for byte (FIL-05)", async () => {
     const bytes = Buffer.alloc(5 * 1024 * 1024 + 17);
-    for (let at = 0; at < bytes.length; at += 4) bytes.writeUInt32LE((at * 2654435761) >>> 0, Math.min(at, bytes.length - 4));
+    for (let at = 0; at < bytes.length; at += 4)
+      bytes.writeUInt32LE((at * 2654435761) >>> 0, Math.min(at, bytes.length - 4));
     const { body } = await upload({ name: "curve.dat", type: "application/octet-stream", bytes });
     const back = await fetchFile(author, body.serverData.id);
     expect(back.headers.get("content-length")).toBe(String(bytes.length));
@@ -98,7 +102,10 @@ describe("an upload", () => {
     expect((await announce(author, file, "not-an-id")).status).toBe(400);
     const two = await ask(begin, "/api/uploadthing?actionType=upload&slug=attachment", {
       cookie: author.cookie,
-      json: { input: { revisionId }, files: [1, 2].map((lastModified) => ({ name: "a", type: "", size: 1, lastModified })) },
+      json: {
+        input: { revisionId },
+        files: [1, 2].map((lastModified) => ({ name: "a", type: "", size: 1, lastModified })),
+      },
     });
     expect(two.status).toBe(400);
     const stranger = await ask(begin, "/api/uploadthing?actionType=upload&slug=attachment", { json: {} });
@@ -109,10 +116,20 @@ describe("an upload", () => {
     const before = await kept();
     const text = { name: "a.txt", type: "text/plain", bytes: Buffer.from("twelve bytes") };
     const longer = await announce(author, { ...text, size: 5 });
-    expect(await send(author, longer.body[0].url, text)).toMatchObject({ status: 422, body: { code: "attachment.length-differs" } });
+    expect(await send(author, longer.body[0].url, text)).toMatchObject({
+      status: 422,
+      body: { code: "attachment.length-differs" },
+    });
     const shorter = await announce(author, { ...text, size: 50 });
-    expect(await send(author, shorter.body[0].url, text)).toMatchObject({ status: 422, body: { code: "attachment.length-differs" } });
-    const program = { name: "reading.pdf", type: "application/pdf", bytes: Buffer.concat([Buffer.from("MZ\x90\0\x03\0\0\0"), Buffer.alloc(200)]) };
+    expect(await send(author, shorter.body[0].url, text)).toMatchObject({
+      status: 422,
+      body: { code: "attachment.length-differs" },
+    });
+    const program = {
+      name: "reading.pdf",
+      type: "application/pdf",
+      bytes: Buffer.concat([Buffer.from("MZ\x90\0\x03\0\0\0"), Buffer.alloc(200)]),
+    };
     expect(await upload(program)).toMatchObject({ status: 422, body: { code: "attachment.type-refused" } });
 
     const again = await announce(author, program);
@@ -123,14 +140,22 @@ describe("an upload", () => {
       headers: { "x-uploadthing-version": "7.7.4" },
     });
     expect(bySdk.status).toBe(200);
-    expect(await bySdk.json()).toMatchObject({ error: expect.stringContaining("Nothing was kept"), problem: { code: "attachment.type-refused" } });
+    expect(await bySdk.json()).toMatchObject({
+      error: expect.stringContaining("Nothing was kept"),
+      problem: { code: "attachment.type-refused" },
+    });
 
     const { body } = await announce(author, text);
     const whole = new Response(form(text));
     const bytes = new Uint8Array(await whole.clone().arrayBuffer());
     const type = whole.headers.get("content-type") ?? "";
     const path = body[0].url.slice(ORIGIN.length);
-    const cut = await ask(put, path, { cookie: author.cookie, method: "PUT", body: bytes.slice(0, bytes.length - 20), headers: { "content-type": type } });
+    const cut = await ask(put, path, {
+      cookie: author.cookie,
+      method: "PUT",
+      body: bytes.slice(0, bytes.length - 20),
+      headers: { "content-type": type },
+    });
     expect(cut.status).toBe(422);
     expect(await kept()).toEqual(before);
   });
@@ -148,7 +173,12 @@ describe("an upload", () => {
       expect((await send(author, address.href, file)).status).toBe(404);
     }
     expect((await send(colleague, url.href, file)).status).toBe(404);
-    const cross = await ask(put, url.pathname + url.search, { cookie: author.cookie, method: "PUT", body: form(file), origin: "https://evil.example" });
+    const cross = await ask(put, url.pathname + url.search, {
+      cookie: author.cookie,
+      method: "PUT",
+      body: form(file),
+      origin: "https://evil.example",
+    });
     expect(cross.status).toBe(403);
     expect(await kept()).toEqual(before);
   });
@@ -194,7 +224,9 @@ describe("a download", () => {
     const missing = await fetchFile(author, "01890000-0000-7000-8000-000000000000");
     const nothing = await fetchFile(author, "..%2f..%2fetc%2fpasswd");
     expect([hidden.status, missing.status, nothing.status]).toEqual([404, 404, 404]);
-    const [first, second, third] = await Promise.all([hidden, missing, nothing].map(async (answer) => (await answer.json()).code));
+    const [first, second, third] = await Promise.all(
+      [hidden, missing, nothing].map(async (answer) => (await answer.json()).code),
+    );
     expect([second, third]).toEqual([first, first]);
   });
 
@@ -202,8 +234,15 @@ describe("a download", () => {
     const { body } = await upload({ name: "wrong.png", type: "image/png", bytes: PNG });
     const { id } = body.serverData;
     const striking = (visitor: Visitor, reason: string) =>
-      ask(strike, `/api/attachments/${id}/strike`, { cookie: visitor.cookie, json: { revisionId, reason }, params: { id } });
-    expect(await (await striking(author, "  ")).json()).toMatchObject({ status: 400, fields: { reason: expect.any(String) } });
+      ask(strike, `/api/attachments/${id}/strike`, {
+        cookie: visitor.cookie,
+        json: { revisionId, reason },
+        params: { id },
+      });
+    expect(await (await striking(author, "  ")).json()).toMatchObject({
+      status: 400,
+      fields: { reason: expect.any(String) },
+    });
     expect((await striking(witness, "not mine")).status).toBe(403);
     expect((await striking(author, "the wrong picture")).status).toBe(200);
     expect((await striking(author, "the wrong picture")).status).toBe(409);
@@ -215,7 +254,10 @@ describe("disposition (FIL-07)", () => {
   it.each([
     ["a.pdf", "attachment; filename=\"a.pdf\"; filename*=UTF-8''a.pdf"],
     ['q"u\\o;te.txt', "attachment; filename=\"q_u_o_te.txt\"; filename*=UTF-8''q%22u%5Co%3Bte.txt"],
-    ["pH – Ä 10 %.csv", "attachment; filename=\"pH  A 10 _.csv\"; filename*=UTF-8''pH%20%E2%80%93%20%C3%84%2010%20%25.csv"],
+    [
+      "pH – Ä 10 %.csv",
+      "attachment; filename=\"pH  A 10 _.csv\"; filename*=UTF-8''pH%20%E2%80%93%20%C3%84%2010%20%25.csv",
+    ],
     ["it's (1)*.txt", "attachment; filename=\"it's (1)*.txt\"; filename*=UTF-8''it%27s%20%281%29%2A.txt"],
     ["π", "attachment; filename=\"file\"; filename*=UTF-8''%CF%80"],
   ])("writes %s for headers", (name, header) => {

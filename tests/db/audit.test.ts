@@ -1,11 +1,17 @@
-import { sql } from "drizzle-orm";
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from "vitest";
 import { chainFrom, entryChain, listEvents, lockHeads, readHead, record, recordRefusal } from "../../db/audit.ts";
 import { verifyChain, verifyEntryChain } from "../../db/chain.ts";
 import { newId } from "../../db/ids.ts";
 import type { Actor } from "../../db/policy.ts";
 import { EVENT_ACTIONS, sentence, withheldSentence } from "../../db/sentences.ts";
-import { makeNotebook, makePerson, type TestDatabase, testDatabase, theAdministrator } from "../support/database.ts";
+import {
+  makeNotebook,
+  makePerson,
+  sql,
+  type TestDatabase,
+  testDatabase,
+  theAdministrator,
+} from "../support/database.ts";
 
 let store: TestDatabase;
 let notebookId: string;

@@ -1,6 +1,5 @@
 // How long an acknowledgement of a keystroke takes, with one writer and with twenty on one page, against a bare insert of the
 // same bytes in the same run. `tsx tests/db/bench.ts`, or with TEST_DATABASE_URL set on a server.
-import { sql } from "drizzle-orm";
 import * as Y from "yjs";
 import type { Db } from "../../db/client.ts";
 import { beginEntry } from "../../db/entries.ts";
@@ -9,7 +8,7 @@ import type { Actor } from "../../db/policy.ts";
 import { importLibrary } from "../../db/seed/library.ts";
 import { appendUpdate } from "../../db/updates.ts";
 import { makeNotebook, makePerson, testDatabase } from "../support/database.ts";
-import { addBlock, firstLine, openWriter, rowOf } from "./desk-of.ts";
+import { addBlock, firstLine, openWriter, rowOf, sql } from "../support/laboratory.ts";
 
 const KEYSTROKES = 400;
 const WRITERS = 20;

@@ -15,9 +15,11 @@ import {
 
 describe("canonical text", () => {
   it("orders keys by their code units and writes numbers as ECMAScript does (RFC 8785, sections 3.2.2 and 3.2.3)", () => {
-    expect(canonicalDetail(JSON.parse('{"b":1e21,"a":[333333333.33333329,1E30,4.50,2e-3,0.000000000000000000000000001],"€":null}'))).toBe(
-      '{"a":[333333333.3333333,1e+30,4.5,0.002,1e-27],"b":1e+21,"€":null}',
-    );
+    expect(
+      canonicalDetail(
+        JSON.parse('{"b":1e21,"a":[333333333.33333329,1E30,4.50,2e-3,0.000000000000000000000000001],"€":null}'),
+      ),
+    ).toBe('{"a":[333333333.3333333,1e+30,4.5,0.002,1e-27],"b":1e+21,"€":null}');
   });
   it("leaves out keys without a value and refuses what is no plain value", () => {
     expect(canonicalDetail({ a: undefined, b: "0.100" })).toBe('{"b":"0.100"}');

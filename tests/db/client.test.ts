@@ -2,13 +2,12 @@ import { spawn } from "node:child_process";
 import { mkdtempSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
-import { sql } from "drizzle-orm";
-import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { afterAll, beforeAll, describe, expect, it, onTestFinished } from "vitest";
 import { z } from "zod";
 import { type Database, openDatabase, readRows } from "../../db/client.ts";
 import { FolderInUse, FolderUnusable } from "../../db/folder.ts";
 import { newId } from "../../db/ids.ts";
-import { type TestDatabase, testDatabase } from "../support/database.ts";
+import { sql, type TestDatabase, testDatabase } from "../support/database.ts";
 
 // Making a store on disk takes about 6 s of processor time; other work may share the machine.
 const FRESH_STORE_MS = 180_000;
@@ -168,6 +167,9 @@ describe("a data folder", () => {
       child.stdout.setEncoding("utf8");
       child.stdout.on("data", (text: string) => {
         acknowledged = Number(text.trim().split("\n").at(-1));
+      });
+      onTestFinished(() => {
+        child.kill("SIGKILL");
       });
       await until(() => acknowledged >= 50, FRESH_STORE_MS);
       await expect(openDatabase(`file:${path}`)).rejects.toThrow(`process ${child.pid} `);

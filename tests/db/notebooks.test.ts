@@ -1,4 +1,3 @@
-import { sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { listEvents, readHead } from "../../db/audit.ts";
 import type { Db } from "../../db/client.ts";
@@ -18,6 +17,7 @@ import {
   again,
   makeNotebook,
   makePerson,
+  sql,
   type TestDatabase,
   testDatabase,
   theAdministrator,

@@ -77,7 +77,7 @@ beforeAll(async () => {
     authors,
     compounds: COMPOUNDS,
   });
-}, 120_000);
+}, 300_000);
 afterAll(() => store.close());
 
 const all = async (actor: Actor, query: SearchQuery): Promise<SearchHit[]> => {

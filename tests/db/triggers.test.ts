@@ -1,11 +1,11 @@
 // What the database itself refuses, whoever asks: each statement is tried as plain SQL on rows that are there.
-import { type SQL, sql } from "drizzle-orm";
+
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { z } from "zod";
 import { readRows } from "../../db/client.ts";
 import { newId } from "../../db/ids.ts";
 import { isLegalStep, STATES, type State } from "../../db/states.ts";
-import { makeNotebook, makePerson, type TestDatabase, testDatabase } from "../support/database.ts";
+import { makeNotebook, makePerson, type SQL, sql, type TestDatabase, testDatabase } from "../support/database.ts";
 
 let store: TestDatabase;
 let personId: string;
@@ -340,7 +340,7 @@ async function fill(revision: { id: string; entryId: string; attachmentId: strin
     sql`insert into signed_contents (revision_id, version, content, sha256, at) values (${id}, 1, '{}', 'x', now())`,
     sql`insert into signatures (id, revision_id, kind, person_id, printed_name, role, meaning, at, content_sha256, manifest, jws, kid)
         values (${newId()}, ${id}, 'author', ${personId}, 'R. Okafor', 'researcher', 'written by me', now(), 'x', '{}', 'x', 'k')`,
-    sql`insert into openings (revision_id, person_id, session_id, content_sha256, opened_at) values (${id}, ${personId}, 's', 'x', now())`,
+    sql`insert into openings (revision_id, person_id, session_id, content_sha256, seq, opened_at) values (${id}, ${personId}, 's', 'x', 0, now())`,
     sql`insert into findings (id, revision_id, person_id, content_sha256, engine, blocks, files, at) values (${newId()}, ${id}, ${personId}, 'x', '1', '[]', '[]', now())`,
     sql`insert into families (id, name, kind, formula, molar_mass, z0, forms) values ('f', 'An acid', 'acid', 'HA', '60', 0, '[]')`,
     sql`insert into constants (id, family_id, step, version, pka, basis, temperature_c, source, from_memory, nominal, since, current)

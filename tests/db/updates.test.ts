@@ -1,4 +1,3 @@
-import { sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import * as Y from "yjs";
 import { z } from "zod";
@@ -21,8 +20,9 @@ import {
   openWriter,
   rowOf,
   sign,
+  sql,
   textOf,
-} from "./desk-of.ts";
+} from "../support/laboratory.ts";
 
 let store: TestDatabase;
 let lab: Lab;

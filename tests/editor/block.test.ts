@@ -10,7 +10,7 @@ import { bath, paragraph, row } from "./schema/pages.ts";
 function stateOf(page: PageJson): EditorState {
   return EditorState.create({ doc: pageSchema.nodeFromJSON(page) });
 }
-function after(page: PageJson, ...commands: Command[]) {
+function applied(page: PageJson, ...commands: Command[]) {
   let state = stateOf(page);
   const done = commands.map((command) =>
     command(state, (tr) => {
@@ -29,11 +29,11 @@ const page: PageJson = {
     bath("b2", [row("y1")]),
   ],
 };
-const rowsOf = (found: ReturnType<typeof after>) => found.blocks[0]?.rows.map((each) => each.id);
+const rowsOf = (found: ReturnType<typeof applied>) => found.blocks[0]?.rows.map((each) => each.id);
 
 describe("commands of the equilibrium block", () => {
   it("change one field of one row, as typed (CAL-01)", () => {
-    const found = after(
+    const found = applied(
       page,
       setRowFields("b1", "x2", { amount: "0.100", unit: "mmol/L" }),
       setBlockField("b2", "volume", "1.000"),
@@ -45,7 +45,7 @@ describe("commands of the equilibrium block", () => {
 
   it("do nothing when the value stands there already, or the row is gone", () => {
     expect(
-      after(
+      applied(
         page,
         setRowFields("b1", "x1", { amount: "1" }),
         setRowFields("b1", "gone", { amount: "2" }),
@@ -55,11 +55,11 @@ describe("commands of the equilibrium block", () => {
   });
 
   it("add, move and take out rows; the ends stay", () => {
-    expect(rowsOf(after(page, addRow("b1", "x4")))).toEqual(["x1", "x2", "x3", "x4"]);
-    expect(rowsOf(after(page, moveRow("b1", "x3", -1)))).toEqual(["x1", "x3", "x2"]);
-    expect(rowsOf(after(page, moveRow("b1", "x1", 1)))).toEqual(["x2", "x1", "x3"]);
-    expect(rowsOf(after(page, takeOutRow("b1", "x2")))).toEqual(["x1", "x3"]);
-    expect(after(page, moveRow("b1", "x1", -1), moveRow("b1", "x3", 1)).done).toEqual([false, false]);
+    expect(rowsOf(applied(page, addRow("b1", "x4")))).toEqual(["x1", "x2", "x3", "x4"]);
+    expect(rowsOf(applied(page, moveRow("b1", "x3", -1)))).toEqual(["x1", "x3", "x2"]);
+    expect(rowsOf(applied(page, moveRow("b1", "x1", 1)))).toEqual(["x2", "x1", "x3"]);
+    expect(rowsOf(applied(page, takeOutRow("b1", "x2")))).toEqual(["x1", "x3"]);
+    expect(applied(page, moveRow("b1", "x1", -1), moveRow("b1", "x3", 1)).done).toEqual([false, false]);
   });
 
   it("refuse a 41st row and lose nothing", () => {
@@ -72,31 +72,31 @@ describe("commands of the equilibrium block", () => {
         ),
       ],
     };
-    const found = after(full, addRow("b1"));
+    const found = applied(full, addRow("b1"));
     expect(found.done).toEqual([false]);
     expect(found.blocks[0]?.rows).toHaveLength(40);
   });
 
   it("take a block off the page and leave the rest", () => {
-    expect(after(page, removeBlock("b1")).blocks.map((block) => block.id)).toEqual(["b2"]);
+    expect(applied(page, removeBlock("b1")).blocks.map((block) => block.id)).toEqual(["b2"]);
   });
 });
 
 describe("putting in", () => {
   it("makes a block with one row and a line to go on writing", () => {
-    const found = after({ type: "doc", content: [paragraph("text")] }, insertEquilibrium);
+    const found = applied({ type: "doc", content: [paragraph("text")] }, insertEquilibrium);
     expect(found.page.content.map((node) => node.type)).toEqual(["paragraph", "equilibrium", "paragraph"]);
     expect(found.blocks[0]?.rows).toHaveLength(1);
   });
 
   it("takes the place of an empty paragraph", () => {
-    const found = after({ type: "doc", content: [{ type: "paragraph" }] }, insertTable);
+    const found = applied({ type: "doc", content: [{ type: "paragraph" }] }, insertTable);
     expect(found.page.content.map((node) => node.type)).toEqual(["table", "paragraph"]);
   });
 
   it("puts a file after the list that the caret stands in", () => {
     const list = { type: "bulletList", content: [{ type: "listItem", content: [paragraph("one")] }] };
-    const found = after({ type: "doc", content: [list] }, insertAttachment("f1"));
+    const found = applied({ type: "doc", content: [list] }, insertAttachment("f1"));
     expect(found.page.content.map((node) => node.type)).toEqual(["bulletList", "attachment", "paragraph"]);
   });
 });

@@ -1,22 +1,10 @@
 // A server for the provider's tests: takes updates, answers repeats with the first one's number, and streams to whoever listens.
 import * as Y from "yjs";
-import { fromBase64, toBase64 } from "../../editor/base64.ts";
+import { toBase64 } from "../../editor/base64.ts";
 import { seedPage } from "../../editor/schema/index.ts";
 
 export class FakeEvents extends EventTarget {
   readyState = 1;
-  readonly url: string;
-  readonly withCredentials = false;
-  readonly CONNECTING = 0;
-  readonly OPEN = 1;
-  readonly CLOSED = 2;
-  onopen = null;
-  onmessage = null;
-  onerror = null;
-  constructor(url: string) {
-    super();
-    this.url = url;
-  }
   close(): void {
     this.readyState = 2;
   }
@@ -42,8 +30,8 @@ export class FakeServer {
     Y.applyUpdate(this.doc, seedPage());
   }
 
-  readonly openEvents = (url: string): EventSource => {
-    const stream = new FakeEvents(url);
+  readonly openEvents = (): FakeEvents => {
+    const stream = new FakeEvents();
     this.streams.push(stream);
     queueMicrotask(() => {
       if (this.mode === "down" || this.mode === "signed-out") {
@@ -114,5 +102,3 @@ export class FakeServer {
 function problem(status: number, code: string, values: object = {}): Response {
   return Response.json({ type: `/problems/${code}`, title: code, status, code, values }, { status });
 }
-
-export const decode = fromBase64;

@@ -191,3 +191,8 @@ export async function again(db: Db, actor: Actor): Promise<Actor> {
   if (now === null) throw new Error("The person can no longer act.");
   return now;
 }
+
+// ---- plain SQL ----------------------------------------------------------------------------------------------
+
+// Tests see no tables; where one looks at a row, or tries what no verb does, it writes the SQL with this.
+export { type SQL, sql } from "drizzle-orm";

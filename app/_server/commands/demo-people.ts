@@ -4,5 +4,7 @@ import people from "../../../db/seed/demo-people.json" with { type: "json" };
 
 const widest = Math.max(...people.map((person) => person.email.length));
 for (const person of people) {
-  process.stdout.write(`  ${person.email.padEnd(widest)}  ${person.password.padEnd(24)}${person.printedName}, ${person.about}\n`);
+  process.stdout.write(
+    `  ${person.email.padEnd(widest)}  ${person.password.padEnd(24)}${person.printedName}, ${person.about}\n`,
+  );
 }

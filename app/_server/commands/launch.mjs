@@ -9,7 +9,16 @@ import { fileURLToPath } from "node:url";
 const root = fileURLToPath(new URL("../../../", import.meta.url));
 const mode = process.argv[2] ?? "";
 const SOURCES = ["app", "components", "editor", "chem", "db", "drizzle", "public"];
-const SETTINGS = ["package-lock.json", "next.config.mjs", "postcss.config.mjs", "tailwind.config.ts", "tsconfig.json", "proxy.ts", "instrumentation.ts", "instrumentation-node.ts"];
+const SETTINGS = [
+  "package-lock.json",
+  "next.config.mjs",
+  "postcss.config.mjs",
+  "tailwind.config.ts",
+  "tsconfig.json",
+  "proxy.ts",
+  "instrumentation.ts",
+  "instrumentation-node.ts",
+];
 const MIB = 1024 * 1024;
 const NEXT = join("node_modules", "next", "dist", "bin", "next");
 
@@ -33,7 +42,9 @@ async function develop() {
   await demandPort(port);
   install();
   const isOwn = process.env.COUNTERLEAF_SECRET !== undefined;
-  const environment = isOwn ? process.env : { COUNTERLEAF_DEMO: "1", COUNTERLEAF_DATA: join(root, ".data", "dev"), ...process.env };
+  const environment = isOwn
+    ? process.env
+    : { COUNTERLEAF_DEMO: "1", COUNTERLEAF_DATA: join(root, ".data", "dev"), ...process.env };
   const server = spawn(process.execPath, [NEXT, "dev", "--port", String(port)], {
     env: { ...environment, PORT: String(port), NEXT_TELEMETRY_DISABLED: "1" },
     stdio: "inherit",
@@ -56,7 +67,9 @@ async function launch(demo) {
     NEXT_TELEMETRY_DISABLED: "1",
     // Our own code ends the process, after the database is closed.
     NEXT_MANUAL_SIG_HANDLE: "true",
-    ...(demo ? { COUNTERLEAF_DEMO: "1", COUNTERLEAF_DATA: process.env.COUNTERLEAF_DATA ?? join(root, ".data", "demo") } : {}),
+    ...(demo
+      ? { COUNTERLEAF_DEMO: "1", COUNTERLEAF_DATA: process.env.COUNTERLEAF_DATA ?? join(root, ".data", "demo") }
+      : {}),
   };
   if (!demo) {
     const checked = tsx("app/_server/commands/check-settings.ts", environment);
@@ -68,7 +81,10 @@ async function launch(demo) {
   });
   // Next's own banner says less than ours; everything after it (the log) goes through.
   server.stdout.on("data", (bytes) => {
-    const kept = bytes.toString().split("\n").filter((line) => line.startsWith("{"));
+    const kept = bytes
+      .toString()
+      .split("\n")
+      .filter((line) => line.startsWith("{"));
     if (kept.length > 0) process.stdout.write(`${kept.join("\n")}\n`);
   });
   for (const signal of ["SIGINT", "SIGTERM"]) process.on(signal, () => server.kill("SIGTERM"));
@@ -79,14 +95,17 @@ async function launch(demo) {
 function demandNode() {
   const [major = 0, minor = 0] = process.versions.node.split(".").map(Number);
   if (major !== 20 || minor < 9) {
-    stop(`Counterleaf needs Node 20 (20.9 or later of that line); this is ${process.versions.node}. Install Node 20 and run the command again.`);
+    stop(
+      `Counterleaf needs Node 20 (20.9 or later of that line); this is ${process.versions.node}. Install Node 20 and run the command again.`,
+    );
   }
 }
 
 function readPort() {
   const text = process.env.PORT ?? "3000";
   const port = Number(text);
-  if (!/^\d{1,5}$/.test(text) || port < 1 || port > 65535) stop(`PORT is "${text}", which is no port number: choose one from 1 to 65535.`);
+  if (!/^\d{1,5}$/.test(text) || port < 1 || port > 65535)
+    stop(`PORT is "${text}", which is no port number: choose one from 1 to 65535.`);
   return port;
 }
 
@@ -94,7 +113,8 @@ function demandPort(port) {
   return new Promise((done) => {
     const probe = createServer();
     probe.once("error", (fault) => {
-      if (fault.code === "EADDRINUSE") stop(`Port ${port} is taken by another program: stop that one, or choose another with PORT=${port + 1}.`);
+      if (fault.code === "EADDRINUSE")
+        stop(`Port ${port} is taken by another program: stop that one, or choose another with PORT=${port + 1}.`);
       if (fault.code === "EACCES") stop(`This user may not open port ${port}: choose one above 1023 with PORT.`);
       stop(`Port ${port} cannot be opened (${fault.code}): choose another with PORT.`);
     });
@@ -106,7 +126,9 @@ function demandRoom() {
   const { bavail, bsize } = statfsSync(root);
   const needed = existsSync(join(root, "node_modules")) ? 300 : 2000;
   if (bavail * bsize < needed * MIB) {
-    stop(`The disk has ${Math.floor((bavail * bsize) / MIB)} MiB left and ${needed} MiB are needed: make room, then run the command again.`);
+    stop(
+      `The disk has ${Math.floor((bavail * bsize) / MIB)} MiB left and ${needed} MiB are needed: make room, then run the command again.`,
+    );
   }
 }
 
@@ -114,10 +136,12 @@ function demandRoom() {
 function install() {
   const done = join(root, "node_modules", ".package-lock.json");
   if (existsSync(done) && installedFor() === lockHash()) return;
-  if (existsSync(done) && installedFor() === null && statSync(done).mtimeMs >= statSync("package-lock.json").mtimeMs) return remember();
+  if (existsSync(done) && installedFor() === null && statSync(done).mtimeMs >= statSync("package-lock.json").mtimeMs)
+    return remember();
   console.log("Installing the packages of the lock file …");
   const run = spawnSync("npm", ["ci", "--no-audit", "--no-fund"], { stdio: ["ignore", "ignore", "inherit"] });
-  if (run.status !== 0) stop("The packages could not be installed (npm's words are above). See to it, then run the command again.");
+  if (run.status !== 0)
+    stop("The packages could not be installed (npm's words are above). See to it, then run the command again.");
   remember();
 }
 
@@ -198,7 +222,10 @@ function greet(demo, port) {
 }
 
 function tsx(file, environment) {
-  const run = spawnSync(process.execPath, ["--conditions=react-server", "--import", "tsx", file], { env: environment, stdio: "inherit" });
+  const run = spawnSync(process.execPath, ["--conditions=react-server", "--import", "tsx", file], {
+    env: environment,
+    stdio: "inherit",
+  });
   return run.status ?? 1;
 }
 

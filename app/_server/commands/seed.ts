@@ -1,8 +1,8 @@
 // Sets up the demo laboratory in the store, once; what people did since stays. The server does the same at its start.
 import "server-only";
 import { database } from "../database.ts";
-import { settings } from "../env.ts";
 import { seedDemoOnce } from "../demo.ts";
+import { settings } from "../env.ts";
 import { closeAll } from "../shutdown.ts";
 
 try {

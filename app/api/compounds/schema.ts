@@ -1,6 +1,8 @@
 import { z } from "zod";
 
-const compoundId = z.string().regex(/^(reagent|form|family):[\w.:-]{1,120}$/, { error: "This does not name a compound." });
+const compoundId = z
+  .string()
+  .regex(/^(reagent|form|family):[\w.:-]{1,120}$/, { error: "This does not name a compound." });
 
 /** What a person typed, or the ids of compounds that are on a page already. */
 export const compoundsQuery = z.union([

@@ -8,5 +8,7 @@ export const GET = route(async (_actor, { request }) => sdkHandler(settings().ur
 
 export const POST = route(async (_actor, { request }) => {
   parseQuery(uploadQuery, request.url);
-  return sdkHandler(request.headers.get("origin") ?? settings().url)(await refuseLong(request, UPLOAD_REQUEST_LIMIT_BYTES));
+  return sdkHandler(request.headers.get("origin") ?? settings().url)(
+    await refuseLong(request, UPLOAD_REQUEST_LIMIT_BYTES),
+  );
 });

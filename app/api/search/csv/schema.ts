@@ -54,8 +54,14 @@ export const searchAddress = z
       states: asked.state,
       notebookId: asked.notebook || undefined,
       authorId: asked.author || undefined,
-      dates: asked.from || asked.to ? { kind: asked.date || "recorded", from: asked.from || undefined, to: asked.to || undefined } : undefined,
-      pH: asked.pHOf && (asked.pHFrom !== undefined || asked.pHTo !== undefined) ? { kind: asked.pHOf, from: asked.pHFrom ?? -5, to: asked.pHTo ?? 20 } : undefined,
+      dates:
+        asked.from || asked.to
+          ? { kind: asked.date || "recorded", from: asked.from || undefined, to: asked.to || undefined }
+          : undefined,
+      pH:
+        asked.pHOf && (asked.pHFrom !== undefined || asked.pHTo !== undefined)
+          ? { kind: asked.pHOf, from: asked.pHFrom ?? -5, to: asked.pHTo ?? 20 }
+          : undefined,
       newestOnly: asked.newest === "1",
       asOf: asked.asOf || undefined,
     }),

@@ -12,7 +12,7 @@ import type { Actor } from "../../db/policy.ts";
 import { contentToSign, signAsAuthor } from "../../db/signatures.ts";
 import { appendUpdate, pageState } from "../../db/updates.ts";
 import { checkRevision, countersign, markWhole, openRevision } from "../../db/witnessing.ts";
-import { makeNotebook, makePerson } from "../support/database.ts";
+import { makeNotebook, makePerson } from "./database.ts";
 
 export type Lab = {
   notebookId: string;
@@ -233,3 +233,5 @@ export async function countRows(db: Db, table: string, revisionId?: string): Pro
   );
   return row?.count ?? 0;
 }
+
+export { sql } from "drizzle-orm";
