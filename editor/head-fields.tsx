@@ -23,7 +23,7 @@ export function HeadFields({ doc, recordedAt, timeZone, isEditable }: HeadFields
   const isLate = days > 1;
   const isAhead = days < 0;
   return (
-    <div className="stack">
+    <div className="stack" style={{ paddingLeft: "var(--margin-w)" }}>
       <EnteredText
         label="Title"
         value={head.title}

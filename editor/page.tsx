@@ -57,6 +57,8 @@ export function Page({ revisionId, person, provider, line, decimalSign, timeZone
   const editor = useEditor(
     {
       immediatelyRender: false,
+      // Its own style element would break the policy of the page; its rules are in globals.css.
+      injectCSS: false,
       editable: isEditable,
       extensions: [
         Together.configure({ doc: provider.doc, awareness: provider.awareness }),

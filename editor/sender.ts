@@ -150,7 +150,7 @@ export function makeSender({ path, personId, tab, outbox, ask, onChange, onIncom
   /** True when the session is this person's again; another who signed in here must not send it. */
   async function isStillOurs(): Promise<boolean> {
     try {
-      const response = await ask("/api/auth/get-session", { headers: { accept: "application/json" } });
+      const response = await ask("/api/auth/session", { headers: { accept: "application/json" } });
       const session: unknown = response.ok ? await response.json() : null;
       return idOfSession(session) === personId;
     } catch {
@@ -230,7 +230,9 @@ export function makeSender({ path, personId, tab, outbox, ask, onChange, onIncom
 }
 
 function idOfSession(session: unknown): string | null {
-  if (typeof session !== "object" || session === null || !("user" in session)) return null;
-  const { user } = session;
-  return typeof user === "object" && user !== null && "id" in user && typeof user.id === "string" ? user.id : null;
+  if (typeof session !== "object" || session === null || !("person" in session)) return null;
+  const { person } = session;
+  return typeof person === "object" && person !== null && "id" in person && typeof person.id === "string"
+    ? person.id
+    : null;
 }

@@ -6,8 +6,7 @@ import { FormulaText } from "../../components/chem/formula-text.tsx";
 import { significant } from "../../components/format.ts";
 import type { CompoundItem } from "../../components/query/compounds.ts";
 import { Button } from "../../components/ui/button.tsx";
-import { Menu } from "../../components/ui/menu.tsx";
-import { SelectField } from "../../components/ui/select-field.tsx";
+import { ChoiceField } from "../choice-field.tsx";
 import type { RowField } from "../commands/block.ts";
 import { EnteredNumber, EnteredText } from "../entered-text.tsx";
 import { usePage } from "../page-context.tsx";
@@ -28,7 +27,7 @@ export type CompositionProps = {
   onTakeOut: (rowId: string) => void;
 };
 
-const COLUMNS = "minmax(170px, 1fr) 104px 104px 96px 112px 96px 78px 56px";
+const COLUMNS = "minmax(170px, 1fr) 104px 104px 92px 108px 92px 78px 66px";
 
 export function Composition({
   rows,
@@ -148,7 +147,7 @@ function Row({
         refuse={(decimal) => (decimal.startsWith("-") ? "An amount is not below zero. Write what went in." : undefined)}
         onCommit={(amount) => set({ amount })}
       />
-      <SelectField
+      <ChoiceField
         label={`Unit, ${place}`}
         choices={AMOUNT_UNITS.map((unit) => ({ value: unit, label: unit }))}
         value={row.unit}
@@ -174,8 +173,7 @@ function Row({
             <>
               <EnteredNumber
                 label={`Density, ${place}`}
-                aside="g/mL"
-                className="is-named"
+                hint="density, g/mL"
                 value={row.density}
                 decimalSign={decimalSign}
                 unit="g/mL"
@@ -200,22 +198,21 @@ function Row({
         <span className="away">Concentration in mol/L: </span>
         {concentration === null ? <span className="faint">waits</span> : significant(concentration, 4, decimalSign)}
       </span>
-      <Menu
-        kind="quiet"
-        label={`Row ${index + 1}${item === undefined ? "" : `, ${item.name}`}: move or take out`}
-        acts={[
-          { id: "up", label: "Move up", disabled: index === 0 },
-          { id: "down", label: "Move down", disabled: index === count - 1 },
-          { id: "out", label: "Take out", stop: true },
-        ]}
-        onAct={(act) => {
-          if (act === "up") onMove(row.id, -1);
-          if (act === "down") onMove(row.id, 1);
-          if (act === "out") onTakeOut(row.id);
-        }}
-      >
-        Row
-      </Menu>
+      <span className="row-of">
+        {index === 0 ? null : (
+          <Button kind="quiet" aria-label={`Move row ${index + 1} up`} onClick={() => onMove(row.id, -1)}>
+            up
+          </Button>
+        )}
+        {index === count - 1 ? null : (
+          <Button kind="quiet" aria-label={`Move row ${index + 1} down`} onClick={() => onMove(row.id, 1)}>
+            down
+          </Button>
+        )}
+        <Button kind="quiet-stop" aria-label={`Take out row ${index + 1}`} onClick={() => onTakeOut(row.id)}>
+          take out
+        </Button>
+      </span>
     </fieldset>
   );
 }

@@ -1,10 +1,11 @@
 "use client";
-// A compound, looked up by name, synonym, CAS RN or formula.
+// A compound, looked up by name, synonym, CAS RN or formula. A combobox of our own: the library's keeps a hidden template in the
+// page, and React cannot find the caret in an editable page that holds one.
 import { useQuery } from "@tanstack/react-query";
-import { type Ref, useDeferredValue, useState } from "react";
+import { type KeyboardEvent, type Ref, useDeferredValue, useId, useState } from "react";
 import { FormulaText } from "../../components/chem/formula-text.tsx";
 import { type CompoundItem, compoundsQuery } from "../../components/query/compounds.ts";
-import { ComboField } from "../../components/ui/combo-field.tsx";
+import { describedBy, FieldFrame, fieldIds } from "../../components/ui/field-parts.tsx";
 import { usePending } from "../page-context.tsx";
 
 type CompoundFieldProps = {
@@ -29,73 +30,121 @@ export function CompoundField({
   isForRow = false,
   ref,
 }: CompoundFieldProps) {
+  const ids = fieldIds(useId());
   const name = chosen?.name ?? chosenId;
   const [typed, setTyped] = useState<string | null>(null);
+  const [at, setAt] = useState(0);
   const report = usePending();
-  const input = typed ?? name;
-  const asked = useDeferredValue(typed === null || typed === name ? "" : typed);
+  const asked = useDeferredValue(typed ?? "").trim();
   const found = useQuery(compoundsQuery(asked));
   const items = asked === "" ? [] : (found.data?.items ?? []);
-  const wrongCas = found.data?.casCheck ?? null;
+  const isOpen = typed !== null && typed.trim() !== "";
+  const active = Math.min(at, Math.max(0, items.length - 1));
+  const optionId = (index: number) => `${ids.control}-option-${index}`;
+
+  const change = (text: string | null) => {
+    setTyped(text);
+    setAt(0);
+    report(text !== null && text.trim() !== "" && text.trim() !== name);
+  };
+  const pick = (item: CompoundItem | undefined) => {
+    if (item === undefined || (isForRow && !canBePoured(item))) return;
+    change(null);
+    onPick(item);
+  };
+  const onKeyDown = (event: KeyboardEvent<HTMLInputElement>) => {
+    if (!isOpen) return;
+    const by = event.key === "ArrowDown" ? 1 : event.key === "ArrowUp" ? -1 : 0;
+    if (by !== 0 && items.length > 0) setAt((active + by + items.length) % items.length);
+    else if (event.key === "Enter") pick(items[active]);
+    else if (event.key === "Escape") change(null);
+    else return;
+    event.preventDefault();
+    event.stopPropagation();
+  };
+  const words =
+    asked !== (typed ?? "").trim() || found.isFetching
+      ? "Looking …"
+      : found.isError
+        ? "The library cannot be asked at the moment."
+        : wordsFor(found.data?.casCheck ?? null, items.length, isForRow);
   return (
-    <ComboField
-      className={className}
-      label={label}
-      ref={ref}
-      input={input}
-      onInput={(text) => {
-        setTyped(text);
-        report(text.trim() !== name && text.trim() !== "");
-      }}
-      value={chosenId}
-      error={error}
-      loading={found.isFetching}
-      placeholder="name, CAS number, formula"
-      columns="minmax(0, 1fr) 150px 92px 100px"
-      items={items.map((item) => ({
-        id: item.id,
-        text: item.name,
-        disabled: isForRow && !canBePoured(item),
-        columns: [
-          <span key="name">
-            {item.name}
-            {item.matched === item.name ? null : <span className="aside"> {item.matched}</span>}
-          </span>,
-          <FormulaText key="formula" formula={item.formula} />,
-          <span key="mass" className="mono r">
-            {item.molarMass ?? ""}
-          </span>,
-          <span key="cas" className="mono aside">
-            {item.cas ?? ""}
-          </span>,
-        ],
-      }))}
-      note={
-        isForRow
-          ? "Name, formula, molar mass in g/mol, CAS number. Only what is neutral can be poured in."
-          : "Name, formula, molar mass in g/mol, CAS number."
-      }
-      emptyText={
-        wrongCas === null
-          ? found.isError
-            ? "The library cannot be asked at the moment."
-            : undefined
-          : `The check digit of ${wrongCas.given} does not fit: ${wrongCas.corrected} would.`
-      }
-      onPick={(picked) => {
-        const item = items.find((each) => each.id === picked.id);
-        if (item === undefined) return;
-        setTyped(null);
-        report(false);
-        onPick(item);
-      }}
-      onBlur={() => {
-        // What was not chosen from the list names no compound: the field shows again what stands in the row.
-        setTyped(null);
-        report(false);
-      }}
-    />
+    <div className={className} style={{ position: "relative", minWidth: 0 }}>
+      <FieldFrame ids={ids} label={label} error={error}>
+        <input
+          ref={ref}
+          id={ids.control}
+          className="in"
+          type="text"
+          role="combobox"
+          aria-autocomplete="list"
+          aria-expanded={isOpen}
+          aria-controls={`${ids.control}-list`}
+          aria-activedescendant={isOpen && items.length > 0 ? optionId(active) : undefined}
+          aria-invalid={error ? true : undefined}
+          aria-describedby={describedBy(ids, { hint: false, error: Boolean(error) })}
+          autoComplete="off"
+          spellCheck={false}
+          placeholder="name, CAS number, formula"
+          value={typed ?? name}
+          onChange={(event) => change(event.target.value)}
+          onKeyDown={onKeyDown}
+          // What was not chosen from the list names no compound: the field shows again what stands there.
+          onBlur={() => change(null)}
+        />
+      </FieldFrame>
+      {isOpen ? (
+        <div
+          className="list-sheet wide"
+          style={{ position: "absolute", left: 0, top: "100%", maxHeight: "min(420px, 60vh)" }}
+        >
+          <div
+            className="choices"
+            role="listbox"
+            id={`${ids.control}-list`}
+            aria-label={`${label}: what was found`}
+            style={{ "--choice-cols": "minmax(0, 1fr) 150px 92px 100px" }}
+          >
+            {items.map((item, index) => (
+              // biome-ignore lint/a11y/useKeyWithClickEvents: the field has the keys, by aria-activedescendant
+              <div
+                key={item.id}
+                id={optionId(index)}
+                className="choice cols"
+                role="option"
+                tabIndex={-1}
+                aria-selected={index === active}
+                aria-disabled={isForRow && !canBePoured(item) ? true : undefined}
+                data-focused={index === active ? true : undefined}
+                data-disabled={isForRow && !canBePoured(item) ? true : undefined}
+                onMouseDown={(event) => event.preventDefault()}
+                onMouseEnter={() => setAt(index)}
+                onClick={() => pick(item)}
+              >
+                <span>
+                  {item.name}
+                  {item.matched === item.name ? null : <span className="aside"> {item.matched}</span>}
+                </span>
+                <FormulaText formula={item.formula} />
+                <span className="mono">{item.molarMass ?? ""}</span>
+                <span className="mono aside">{item.cas ?? ""}</span>
+              </div>
+            ))}
+          </div>
+          <span className="list-note" role="status">
+            {words}
+          </span>
+        </div>
+      ) : null}
+    </div>
   );
+}
+
+function wordsFor(casCheck: { given: string; corrected: string } | null, found: number, isForRow: boolean): string {
+  if (casCheck !== null) return `The check digit of ${casCheck.given} does not fit: ${casCheck.corrected} would.`;
+  if (found === 0) return "Nothing found. Try another name, a CAS number or a formula.";
+  const columns = "Name, formula, molar mass in g/mol, CAS number.";
+  return isForRow ? `${columns} Only what is neutral can be poured in.` : columns;
 }
 
 /** Shelf reagents, and forms without charge; a family as a whole is no substance. */

@@ -8,7 +8,7 @@ import { BlockResult } from "../../components/chem/block-result.tsx";
 import { SideRow } from "../../components/leaf/side-row.tsx";
 import { Button } from "../../components/ui/button.tsx";
 import { FieldError } from "../../components/ui/field-parts.tsx";
-import { SelectField } from "../../components/ui/select-field.tsx";
+import { ChoiceField } from "../choice-field.tsx";
 import { addRow, moveRow, removeBlock, setBlockField, setRowFields, takeOutRow } from "../commands/block.ts";
 import { EnteredNumber, EnteredText } from "../entered-text.tsx";
 import { usePage } from "../page-context.tsx";
@@ -48,12 +48,14 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
       <BlockVouch block={block} number={number} answer={answer} />
       <header className="eq-head">
         <span className="tag-id">E{number}</span>
-        <EnteredText
-          label={`Title of E${number}`}
-          value={block.title}
-          most={200}
-          onEnter={(title) => run(setBlockField(id, "title", title))}
-        />
+        <div style={{ flex: "1 1 280px", maxWidth: 560 }}>
+          <EnteredText
+            label={`Title of E${number}`}
+            value={block.title}
+            most={200}
+            onEnter={(title) => run(setBlockField(id, "title", title))}
+          />
+        </div>
         <span className="note" role="status">
           {answer.words}
         </span>
@@ -96,7 +98,7 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
             refuse={(decimal) => (decimal.startsWith("-") ? "A volume is above zero." : undefined)}
             onCommit={(volume) => run(setBlockField(id, "volume", volume))}
           />
-          <SelectField
+          <ChoiceField
             label="Unit of the volume"
             choices={VOLUME_UNITS.map((unit) => ({ value: unit, label: unit }))}
             value={block.volumeUnit}
@@ -112,7 +114,7 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
               <dd>{block.temperatureC.replace(".", decimalSign)} °C</dd>
             </div>
           </dl>
-          <SelectField
+          <ChoiceField
             label="Activity model"
             choices={ACTIVITY_CHOICES}
             value={block.activity}

@@ -31,7 +31,8 @@ export const Together = Extension.create<
     if (this.options.doc === null) return;
     // The editor begins with the page as it stands, so that nothing is drawn twice and the caret has a place from the start.
     const { doc, mapping } = initProseMirrorDoc(this.options.doc.getXmlFragment("page"), this.editor.schema);
-    this.editor.options.content = doc;
+    // Tiptap takes a node as content; only the type of the option does not say so.
+    Reflect.set(this.editor.options, "content", doc);
     this.storage.mapping = mapping;
   },
   addProseMirrorPlugins() {

@@ -321,17 +321,24 @@ const TABLE: Record<string, Row> = {
     else: "administration.forbidden",
   },
   "(notebook)/entries/_page/signing open": {
+    // To open a draft for signing is its author's; readers see it on its page.
     try: act(signing.open, () => ({ revisionId: draft.revisionId })),
-    is: readers,
+    is: {
+      author: "ok",
+      colleague: "revision.not-author",
+      witness: "revision.forbidden",
+      supervisor: "revision.forbidden",
+    },
     else: "entry.not-found",
   },
   "(notebook)/entries/_page/signing readToTheEnd": {
+    // Readers, but nobody has a content of this hash open.
     try: act(signing.readToTheEnd, () => ({ revisionId: draft.revisionId, contentSha256: NO_HASH })),
     is: {
-      author: "revision.changed",
-      colleague: "revision.changed",
-      witness: "revision.changed",
-      supervisor: "revision.changed",
+      author: "revision.not-whole",
+      colleague: "revision.not-whole",
+      witness: "revision.not-whole",
+      supervisor: "revision.not-whole",
     },
     else: "entry.not-found",
   },

@@ -51,8 +51,8 @@ export class FakeServer {
   readonly ask: typeof fetch = async (input, init) => {
     const url = String(input);
     if (this.mode === "down") throw new TypeError("no line");
-    if (url.endsWith("/get-session")) {
-      return Response.json(this.mode === "signed-out" ? null : { user: { id: this.sessionOf } });
+    if (url.endsWith("/api/auth/session")) {
+      return Response.json({ person: this.mode === "signed-out" ? null : { id: this.sessionOf } });
     }
     if (this.mode === "signed-out") return problem(401, "session.ended");
     if (url.endsWith("/stray")) return Response.json({ updates: [] });

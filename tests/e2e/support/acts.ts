@@ -12,9 +12,12 @@ export async function beginEntry(page: Page, notebook: string): Promise<string> 
   return label;
 }
 
+/** Fills in the title, and today as the day on which it was done. */
 export async function title(page: Page, text: string): Promise<void> {
   await page.getByLabel("Title", { exact: true }).fill(text);
   await page.getByLabel("Title", { exact: true }).press("Enter");
+  await page.getByLabel("Done on").fill(new Date().toISOString().slice(0, 10));
+  await page.getByLabel("Done on").press("Enter");
 }
 
 /** Writes a paragraph at the end of the page. */
