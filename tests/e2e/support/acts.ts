@@ -42,9 +42,7 @@ export async function addRow(page: Page, row: number, given: { compound: string;
   if (!(await name.isVisible())) await block.getByRole("button", { name: "Add a row" }).click();
   await name.fill(given.compound);
   await page.getByRole("option", { name: new RegExp(`^${given.compound}`) }).first().click();
-  const unit = block.getByRole("button", { name: new RegExp(`Unit, row ${row}`) });
-  await unit.click();
-  await page.getByRole("option", { name: given.unit, exact: true }).click();
+  await block.getByLabel(`Unit, row ${row}`, { exact: true }).selectOption(given.unit);
   const amount = block.getByLabel(`Amount, row ${row}`, { exact: true });
   await amount.fill(given.amount);
   await amount.press("Enter");
@@ -56,7 +54,8 @@ export async function readToTheEnd(page: Page): Promise<void> {
   const next = page.getByRole("button", { name: "Show the next part not seen" });
   for (let turn = 0; turn < 60; turn++) {
     if (await whole.isVisible()) return;
-    if (await next.isVisible()) await next.click();
+    // The button goes away by itself once the last part was seen.
+    if (await next.isVisible()) await next.click({ timeout: 2_000 }).catch(() => undefined);
     await page.waitForFunction(() => new Promise((done) => requestAnimationFrame(() => requestAnimationFrame(() => done(true)))));
   }
   await expect(whole).toBeVisible();
