@@ -41,7 +41,7 @@ export async function addRow(page: Page, row: number, given: { compound: string;
   const name = block.getByRole("combobox", { name: `Poured in, row ${row}` });
   if (!(await name.isVisible())) await block.getByRole("button", { name: "Add a row" }).click();
   await name.fill(given.compound);
-  await page.getByRole("option", { name: new RegExp(`^${given.compound}`) }).first().click();
+  await block.getByRole("option", { name: new RegExp(given.compound) }).first().click();
   await block.getByLabel(`Unit, row ${row}`, { exact: true }).selectOption(given.unit);
   const amount = block.getByLabel(`Amount, row ${row}`, { exact: true });
   await amount.fill(given.amount);
