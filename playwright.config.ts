@@ -12,11 +12,21 @@ export default defineConfig({
   retries: 0,
   reporter: [["list"], ["json", { outputFile: ".tmp/playwright.json" }]],
   use: {
+    actionTimeout: 20_000,
+    navigationTimeout: 30_000,
     viewport: { width: 1440, height: 1000 },
     trace: "retain-on-failure",
     launchOptions: {
-      executablePath: process.env["CHROMIUM"] ?? "/usr/bin/chromium",
-      args: ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking", "--disable-component-update", "--disable-sync"],
+      executablePath: process.env.CHROMIUM ?? "/usr/bin/chromium",
+      args: [
+        "--no-sandbox",
+        "--disable-gpu",
+        "--disable-quic",
+        "--no-first-run",
+        "--disable-background-networking",
+        "--disable-component-update",
+        "--disable-sync",
+      ],
     },
   },
 });

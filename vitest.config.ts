@@ -12,7 +12,10 @@ export default defineConfig({
     include: ["tests/**/*.test.{ts,tsx}"],
     exclude: ["tests/e2e/**", "node_modules/**"],
     setupFiles: ["./tests/support/quiet.ts"],
-    testTimeout: 30_000,
-    hookTimeout: 60_000,
+    globalSetup: ["./tests/support/templates.ts"],
+    // Each opens a whole database: more of them at once only wait for one another.
+    maxWorkers: 2,
+    testTimeout: 60_000,
+    hookTimeout: 120_000,
   },
 });

@@ -1,5 +1,5 @@
 // The audit trail: events are written in the transaction of what they tell of, chained twice (db/chain.ts).
-import { and, asc, desc, eq, gte, inArray, isNull, lt, lte, or, type SQL } from "drizzle-orm";
+import { and, asc, desc, eq, gte, inArray, isNull, lt, lte, or, type SQL, sql } from "drizzle-orm";
 import { z } from "zod";
 import {
   type ChainedEvent,
@@ -20,6 +20,9 @@ export type EventObject = { objectKind: string; objectId: string; entryId?: stri
 export type Recorded = { seq: number; hash: string; entrySeq: number | null; entryHash: string | null };
 
 const STORE = "store";
+const BEFORE_THE_FIRST: Head = { seq: 0, hash: GENESIS };
+/** A row has 14 values, and a statement at most 65,535. */
+const ROWS_AT_ONCE = 1000;
 
 /**
  * Writes the event into the caller's transaction and returns the new heads. The store's head is locked here and held until
@@ -29,41 +32,57 @@ export async function record(
   tx: Db,
   actor: Pick<Actor, "id" | "printedName"> | null,
   action: EventAction,
-  { objectKind, objectId, entryId, detail = {} }: EventObject,
+  on: EventObject,
 ): Promise<Recorded> {
-  const head = await lockHead(tx);
-  const entryHead = entryId === undefined ? null : await entryHeadOf(tx, entryId);
-  const event: EventCore = {
-    seq: head.seq + 1,
-    at: new Date().toISOString(),
-    personId: actor?.id ?? null,
-    printedName: actor?.printedName ?? null,
-    action,
-    objectKind,
-    objectId,
-    entryId: entryId ?? null,
-    entrySeq: entryHead === null ? null : entryHead.seq + 1,
-    detail: canonicalDetail(detail),
-  };
-  const entryHash = entryHead === null ? null : entryEventHash(entryHead.hash, event);
-  const hash = eventHash(head.hash, event, entryHash);
-  await tx.insert(events).values({
-    ...event,
-    at: new Date(event.at),
-    previousHash: head.hash,
-    hash,
-    entryPreviousHash: entryHead?.hash ?? null,
-    entryHash,
+  const [recorded] = await recordAll(tx, actor, [{ action, ...on }]);
+  if (recorded === undefined) throw new Error("An event was not written.");
+  return recorded;
+}
+
+/** `record` for what happens in one stroke: as many links of the chain, in their order, by as many statements as for one. */
+export async function recordAll(
+  tx: Db,
+  actor: Pick<Actor, "id" | "printedName"> | null,
+  happened: readonly ({ action: EventAction } & EventObject)[],
+): Promise<Recorded[]> {
+  if (happened.length === 0) return [];
+  let head = await lockHead(tx);
+  const entryHeads = await entryHeadsOf(tx, new Set(happened.flatMap(({ entryId }) => entryId ?? [])));
+  const at = new Date();
+  const rows = happened.map(({ action, objectKind, objectId, entryId, detail = {} }) => {
+    const entryHead = entryId === undefined ? null : (entryHeads.get(entryId) ?? BEFORE_THE_FIRST);
+    const event: EventCore = {
+      seq: head.seq + 1,
+      at: at.toISOString(),
+      personId: actor?.id ?? null,
+      printedName: actor?.printedName ?? null,
+      action,
+      objectKind,
+      objectId,
+      entryId: entryId ?? null,
+      entrySeq: entryHead === null ? null : entryHead.seq + 1,
+      detail: canonicalDetail(detail),
+    };
+    const entryHash = entryHead === null ? null : entryEventHash(entryHead.hash, event);
+    const hash = eventHash(head.hash, event, entryHash);
+    const row = { ...event, at, previousHash: head.hash, hash, entryPreviousHash: entryHead?.hash ?? null, entryHash };
+    head = { seq: event.seq, hash };
+    if (entryId !== undefined && event.entrySeq !== null && entryHash !== null) {
+      entryHeads.set(entryId, { seq: event.entrySeq, hash: entryHash });
+    }
+    return row;
   });
-  await tx.update(auditHeads).set({ seq: event.seq, hash }).where(eq(auditHeads.id, STORE));
-  if (entryId !== undefined && event.entrySeq !== null && entryHash !== null) {
-    const next = { seq: event.entrySeq, hash: entryHash };
+  for (let first = 0; first < rows.length; first += ROWS_AT_ONCE) {
+    await tx.insert(events).values(rows.slice(first, first + ROWS_AT_ONCE));
+  }
+  await tx.update(auditHeads).set(head).where(eq(auditHeads.id, STORE));
+  if (entryHeads.size > 0) {
     await tx
       .insert(auditHeads)
-      .values({ id: entryId, ...next })
-      .onConflictDoUpdate({ target: auditHeads.id, set: next });
+      .values([...entryHeads].map(([id, entryHead]) => ({ id, ...entryHead })))
+      .onConflictDoUpdate({ target: auditHeads.id, set: { seq: sql`excluded.seq`, hash: sql`excluded.hash` } });
   }
-  return { seq: event.seq, hash, entrySeq: event.entrySeq, entryHash };
+  return rows.map(({ seq, hash, entrySeq, entryHash }) => ({ seq, hash, entrySeq, entryHash }));
 }
 
 /** Records that something was refused, in a transaction of its own: the one that was refused is gone. */
@@ -85,7 +104,7 @@ export function recordRefusal(
 /** The chain's heads now: what a signature's manifest pins. Locks the store's head, so it is called last in a transaction. */
 export async function lockHeads(tx: Db, entryId: string): Promise<{ store: Head; entry: Head }> {
   const store = await lockHead(tx);
-  return { store, entry: await entryHeadOf(tx, entryId) };
+  return { store, entry: (await entryHeadsOf(tx, new Set([entryId]))).get(entryId) ?? BEFORE_THE_FIRST };
 }
 
 /** The store's head, without a lock: for health and backups. */
@@ -193,13 +212,14 @@ async function lockHead(tx: Db): Promise<Head> {
   return head;
 }
 
-/** Read under the lock of the store's head, which whoever records holds. */
-async function entryHeadOf(tx: Db, entryId: string): Promise<Head> {
-  const [head] = await tx
-    .select({ seq: auditHeads.seq, hash: auditHeads.hash })
+/** Read under the lock of the store's head, which whoever records holds. Nothing for an entry that has no event yet. */
+async function entryHeadsOf(tx: Db, entryIds: ReadonlySet<string>): Promise<Map<string, Head>> {
+  if (entryIds.size === 0) return new Map();
+  const heads = await tx
+    .select({ id: auditHeads.id, seq: auditHeads.seq, hash: auditHeads.hash })
     .from(auditHeads)
-    .where(eq(auditHeads.id, entryId));
-  return head ?? { seq: 0, hash: GENESIS };
+    .where(inArray(auditHeads.id, [...entryIds]));
+  return new Map(heads.map(({ id, seq, hash }) => [id, { seq, hash }]));
 }
 
 async function demandEntry(db: Db, actor: Actor, entryId: string | undefined): Promise<void> {

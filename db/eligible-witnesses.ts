@@ -6,8 +6,15 @@ import { type Actor, demand } from "./policy.ts";
 import { personRoles, user } from "./schema/people.ts";
 import { entries, memberships } from "./schema/records.ts";
 
-export async function eligibleWitnesses(db: Db, actor: Actor, { entryId }: { entryId: string }): Promise<{ id: string; printedName: string }[]> {
-  const [entry] = await db.select({ notebookId: entries.notebookId, authorId: entries.authorId }).from(entries).where(eq(entries.id, entryId));
+export async function eligibleWitnesses(
+  db: Db,
+  actor: Actor,
+  { entryId }: { entryId: string },
+): Promise<{ id: string; printedName: string }[]> {
+  const [entry] = await db
+    .select({ notebookId: entries.notebookId, authorId: entries.authorId })
+    .from(entries)
+    .where(eq(entries.id, entryId));
   if (entry === undefined) throw new Refused("entry.not-found");
   demand(actor, "entry.read", { notebookId: entry.notebookId });
   return db

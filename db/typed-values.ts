@@ -9,7 +9,7 @@ import {
   type PageNode,
   validatePage,
 } from "../editor/schema/index.ts";
-import { record } from "./audit.ts";
+import { recordAll } from "./audit.ts";
 import type { Db } from "./client.ts";
 import { namesOf } from "./compounds.ts";
 import { Refused } from "./errors.ts";
@@ -94,15 +94,23 @@ export async function recordValues(
   revision: RevisionFacts,
   changes: ValueChanges,
 ): Promise<void> {
-  const on = (path: string) => ({ objectKind: "value", objectId: `${revision.id}:${path}`, entryId: revision.entryId });
-  for (const { path, label, was, value } of changes.set) {
-    const detail = { revision: revision.number, path, label, old: was, new: value };
-    await record(tx, actor, was === null ? "value.set" : "value.changed", { ...on(path), detail });
-  }
-  for (const { path, label, was } of changes.gone) {
-    const detail = { revision: revision.number, path, label, old: was, new: null };
-    await record(tx, actor, "value.cleared", { ...on(path), detail });
-  }
+  const on = (path: string) => ({
+    objectKind: "value",
+    objectId: `${revision.id}:${path}`,
+    entryId: revision.entryId,
+  });
+  await recordAll(tx, actor, [
+    ...changes.set.map(({ path, label, was, value }) => ({
+      ...on(path),
+      action: was === null ? ("value.set" as const) : ("value.changed" as const),
+      detail: { revision: revision.number, path, label, old: was, new: value },
+    })),
+    ...changes.gone.map(({ path, label, was }) => ({
+      ...on(path),
+      action: "value.cleared" as const,
+      detail: { revision: revision.number, path, label, old: was, new: null },
+    })),
+  ]);
 }
 
 export function standingAfter(standing: Page["values"], changes: ValueChanges): Page["values"] {

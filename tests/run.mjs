@@ -34,7 +34,10 @@ function runs(stage) {
 function one(stage, command, args, { always = false, quiet = false, uncounted = false } = {}) {
   if (!always && !runs(stage)) return true;
   console.log(`\n── ${stage}`);
-  const run = spawnSync(command, args, { stdio: quiet ? ["ignore", "ignore", "inherit"] : "inherit", env: { ...process.env, FORCE_COLOR: "0" } });
+  const run = spawnSync(command, args, {
+    stdio: quiet ? ["ignore", "ignore", "inherit"] : "inherit",
+    env: { ...process.env, FORCE_COLOR: "0" },
+  });
   const fits = run.status === 0;
   if (!uncounted) count(stage, fits ? 1 : 0, fits ? 0 : 1);
   return fits;
@@ -45,12 +48,18 @@ function vitest(stage, args, environment = {}) {
   console.log(`\n── ${stage}`);
   const report = `.tmp/vitest-${stage}.json`;
   rmSync(report, { force: true });
-  const run = spawnSync(bin("vitest"), ["run", "--reporter=default", "--reporter=json", `--outputFile.json=${report}`, ...args], {
-    stdio: "inherit",
-    env: { ...process.env, ...environment, FORCE_COLOR: "0" },
-  });
+  const run = spawnSync(
+    bin("vitest"),
+    ["run", "--reporter=default", "--reporter=json", `--outputFile.json=${report}`, ...args],
+    {
+      stdio: "inherit",
+      env: { ...process.env, ...environment, FORCE_COLOR: "0" },
+    },
+  );
   if (!existsSync(report)) return count(stage, 0, 1);
-  const { numPassedTests, numFailedTests, numFailedTestSuites, numTotalTests } = JSON.parse(readFileSync(report, "utf8"));
+  const { numPassedTests, numFailedTests, numFailedTestSuites, numTotalTests } = JSON.parse(
+    readFileSync(report, "utf8"),
+  );
   // A file that could not be loaded has no tests to count, and a run without tests has shown nothing.
   const broken = run.status !== 0 && numFailedTests === 0 ? Math.max(1, numFailedTestSuites) : 0;
   count(stage, numPassedTests, numFailedTests + broken + (numTotalTests === 0 ? 1 : 0));
@@ -59,7 +68,9 @@ function vitest(stage, args, environment = {}) {
 /** The database and route tests once more, on Debian's PostgreSQL. */
 async function onPostgres() {
   console.log("\n── postgresql");
-  const server = spawn(process.execPath, ["--import", "tsx", "tests/support/postgres.ts"], { stdio: ["pipe", "pipe", "inherit"] });
+  const server = spawn(process.execPath, ["--import", "tsx", "tests/support/postgres.ts"], {
+    stdio: ["pipe", "pipe", "inherit"],
+  });
   const url = await firstLine(server);
   if (url === null) {
     console.log("PostgreSQL could not be started (the reason is above).");
@@ -91,7 +102,11 @@ function browser() {
   if (!existsSync(report)) return count("browser", 0, 1);
   const { stats, errors } = JSON.parse(readFileSync(report, "utf8"));
   const failed = stats.unexpected + stats.flaky + errors.length;
-  count("browser", stats.expected, failed + (run.status !== 0 && failed === 0 ? 1 : 0) + (stats.expected + failed === 0 ? 1 : 0));
+  count(
+    "browser",
+    stats.expected,
+    failed + (run.status !== 0 && failed === 0 ? 1 : 0) + (stats.expected + failed === 0 ? 1 : 0),
+  );
 }
 
 function demandChromium() {
@@ -100,10 +115,15 @@ function demandChromium() {
   if (isRoot && existsSync("/usr/bin/apt-get")) {
     console.log("Installing Chromium …");
     spawnSync("apt-get", ["update"], { stdio: "ignore" });
-    spawnSync("apt-get", ["install", "-y", "--no-install-recommends", "chromium"], { stdio: ["ignore", "ignore", "inherit"], env: { ...process.env, DEBIAN_FRONTEND: "noninteractive" } });
+    spawnSync("apt-get", ["install", "-y", "--no-install-recommends", "chromium"], {
+      stdio: ["ignore", "ignore", "inherit"],
+      env: { ...process.env, DEBIAN_FRONTEND: "noninteractive" },
+    });
     if (existsSync(path)) return true;
   }
-  console.error(`The browser tests need Chromium at ${path}: install Debian's package chromium as root, or name another with CHROMIUM=/path/to/it.`);
+  console.error(
+    `The browser tests need Chromium at ${path}: install Debian's package chromium as root, or name another with CHROMIUM=/path/to/it.`,
+  );
   return false;
 }
 

@@ -11,14 +11,15 @@ export function showProblem<Values extends FieldValues>(
   fields: readonly Path<Values>[],
 ): void {
   const placed = fields.filter((field) => problem.fields?.[field] !== undefined);
-  for (const field of placed) form.setError(field, { message: problem.fields?.[field] }, { shouldFocus: field === placed[0] });
+  for (const field of placed)
+    form.setError(field, { message: problem.fields?.[field] }, { shouldFocus: field === placed[0] });
   if (placed.length === 0) form.setError("root", { message: sentenceOf(problem) });
 }
 
 /** The problem in one or two sentences. */
 export function sentenceOf(problem: Problem): string {
   const title = /[.!?]$/.test(problem.title) ? problem.title : `${problem.title}.`;
-  const until = typeof problem.values?.["until"] === "string" ? ` Open again at ${clock(problem.values["until"])}.` : "";
+  const until = typeof problem.values?.until === "string" ? ` Open again at ${clock(problem.values.until)}.` : "";
   return `${title}${problem.detail === undefined ? "" : ` ${problem.detail}`}${until}`;
 }
 

@@ -6,7 +6,10 @@ import { UiProvider } from "../../components/ui/ui-provider.tsx";
 
 export function Providers({ children }: { children: ReactNode }) {
   const [client] = useState(
-    () => new QueryClient({ defaultOptions: { queries: { retry: 1, refetchOnWindowFocus: false, networkMode: "always" } } }),
+    () =>
+      new QueryClient({
+        defaultOptions: { queries: { retry: 1, refetchOnWindowFocus: false, networkMode: "always" } },
+      }),
   );
   return (
     <QueryClientProvider client={client}>

@@ -13,7 +13,11 @@ import { TextArea } from "../../components/ui/text-field.tsx";
 import { type Answered, showProblem } from "./answered.ts";
 
 const reasoned = z.object({
-  reason: z.string().trim().min(3, { error: "Write why, in a few words." }).max(500, { error: "At most 500 characters." }),
+  reason: z
+    .string()
+    .trim()
+    .min(3, { error: "Write why, in a few words." })
+    .max(500, { error: "At most 500 characters." }),
 });
 
 type Props = {

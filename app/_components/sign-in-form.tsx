@@ -17,7 +17,10 @@ type Props = {
 };
 
 export function SignInForm({ filled, enter, onEntered }: Props) {
-  const form = useForm<Form>({ resolver: zodResolver(signInInput), defaultValues: filled ?? { email: "", password: "" } });
+  const form = useForm<Form>({
+    resolver: zodResolver(signInInput),
+    defaultValues: filled ?? { email: "", password: "" },
+  });
   const { errors, isSubmitting, isSubmitSuccessful } = form.formState;
   const submit = form.handleSubmit(async (values) => {
     const answered = await enter(values);
@@ -32,9 +35,26 @@ export function SignInForm({ filled, enter, onEntered }: Props) {
           {errors.root.message}
         </Says>
       ) : null}
-      <TextField label="E-mail" type="email" autoComplete="username" error={errors.email?.message} {...form.register("email")} />
-      <TextField label="Password" type="password" autoComplete="current-password" error={errors.password?.message} {...form.register("password")} />
-      <Button type="submit" kind="first" pending={isSubmitting || (isSubmitSuccessful && !errors.root)} pendingWords="Signing in">
+      <TextField
+        label="E-mail"
+        type="email"
+        autoComplete="username"
+        error={errors.email?.message}
+        {...form.register("email")}
+      />
+      <TextField
+        label="Password"
+        type="password"
+        autoComplete="current-password"
+        error={errors.password?.message}
+        {...form.register("password")}
+      />
+      <Button
+        type="submit"
+        kind="first"
+        pending={isSubmitting || (isSubmitSuccessful && !errors.root)}
+        pendingWords="Signing in"
+      >
         Sign in
       </Button>
       <p className="note">

@@ -16,7 +16,11 @@ export function SignInOver({ open, person, enter }: Props) {
   return (
     <>
       {open && isAway ? (
-        <Says kind="warn" finding="You are signed out." actions={<Button onClick={() => setAway(false)}>Sign in again</Button>}>
+        <Says
+          kind="warn"
+          finding="You are signed out."
+          actions={<Button onClick={() => setAway(false)}>Sign in again</Button>}
+        >
           What you type is kept on this device until you do.
         </Says>
       ) : null}

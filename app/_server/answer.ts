@@ -62,6 +62,7 @@ export function route(
 ): RouteHandler {
   return openRoute(async (asked, say) => {
     const actor = await requireActor(asked.request.headers, activity);
+    demandSamePerson(actor, asked.request.headers);
     say(actor);
     return handle(actor, asked);
   });
@@ -96,6 +97,15 @@ export function problemResponse(problem: ShownProblem): Response {
   });
   if (problem.status === 429 || problem.status === 503) response.headers.set("retry-after", String(waitOf(problem)));
   return withHeaders(response, problem.requestId);
+}
+
+/**
+ * A page says whose it is. On a shared device it may outlive its person's session: what it sends then is not the next person's
+ * work, and is answered as the session's end (COL-07).
+ */
+function demandSamePerson(actor: Actor, asked: Headers): void {
+  const person = asked.get("x-person");
+  if (person !== null && person !== actor.id) throw new Refused("session.ended");
 }
 
 export function demandOwnPage(asked: Headers): void {

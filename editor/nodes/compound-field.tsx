@@ -36,8 +36,10 @@ export function CompoundField({
   const [at, setAt] = useState(0);
   const report = usePending();
   const asked = useDeferredValue(typed ?? "").trim();
-  const found = useQuery(compoundsQuery(asked));
-  const items = asked === "" ? [] : (found.data?.items ?? []);
+  const found = useQuery(compoundsQuery(asked, isForRow ? 30 : 12));
+  const all = asked === "" ? [] : (found.data?.items ?? []);
+  // A family as a whole and a charged form cannot be poured in: a row is not offered them.
+  const items = isForRow ? all.filter(canBePoured) : all;
   const isOpen = typed !== null && typed.trim() !== "";
   const active = Math.min(at, Math.max(0, items.length - 1));
   const optionId = (index: number) => `${ids.control}-option-${index}`;
@@ -48,7 +50,7 @@ export function CompoundField({
     report(text !== null && text.trim() !== "" && text.trim() !== name);
   };
   const pick = (item: CompoundItem | undefined) => {
-    if (item === undefined || (isForRow && !canBePoured(item))) return;
+    if (item === undefined) return;
     change(null);
     onPick(item);
   };
@@ -114,9 +116,7 @@ export function CompoundField({
                 role="option"
                 tabIndex={-1}
                 aria-selected={index === active}
-                aria-disabled={isForRow && !canBePoured(item) ? true : undefined}
                 data-focused={index === active ? true : undefined}
-                data-disabled={isForRow && !canBePoured(item) ? true : undefined}
                 onMouseDown={(event) => event.preventDefault()}
                 onMouseEnter={() => setAt(index)}
                 onClick={() => pick(item)}

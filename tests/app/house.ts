@@ -8,8 +8,7 @@ import { enrolPerson } from "../../db/invitations.ts";
 import { addMember, createNotebook } from "../../db/notebooks.ts";
 import { actorOfPerson } from "../../db/people.ts";
 import type { Actor, Role } from "../../db/policy.ts";
-import { importLibrary } from "../../db/seed/library.ts";
-import { type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, type TestDatabase } from "../support/database.ts";
 
 export const ORIGIN = "https://notebook.example";
 export const PASSWORD = "a password of the tests";
@@ -33,8 +32,7 @@ export async function openHouse(): Promise<House> {
     COUNTERLEAF_URL: ORIGIN,
     COUNTERLEAF_DATA: "unused",
   });
-  const store = await testDatabase();
-  await importLibrary(store.db);
+  const store = await libraryDatabase();
   globalThis.counterleafStore = Promise.resolve(store);
   const passwordHash = await hashPassword(PASSWORD);
   const root = await person(["administrator"], "Root", passwordHash);

@@ -1,5 +1,5 @@
 // `npm run bench`, the numerical core's part: the root against a grid sweep of the same residual in the same run, with what comes
-// along with a root, with Davies, and whole blocks. Prints `name: value unit` lines.
+// along with a root, with Davies, and whole blocks. Prints `name: value unit` lines. tests/bench.ts runs it.
 
 import { solveBlock, sweepBlock } from "../../chem/index.ts";
 import type { Mixture, Work } from "../../chem/mixture.ts";
@@ -197,5 +197,3 @@ function measure(run: (k: number) => number, milliseconds: number): number {
   if (Number.isNaN(sink)) throw new Error("a benchmark returned no number");
   return (count * 1000) / elapsed;
 }
-
-if (process.argv[1] !== undefined && import.meta.url.endsWith(process.argv[1].split("/").at(-1) ?? "?")) runChemBench();

@@ -136,7 +136,7 @@ describe("the list of events", () => {
         ...(after === undefined ? {} : { after }),
       });
       expect(page.events.length).toBeLessThanOrEqual(3);
-      seen.push(...page.events.map((event) => event.detail?.["new"]));
+      seen.push(...page.events.map((event) => event.detail?.new));
       if (page.next === null) break;
       after = page.next;
     }

@@ -9,14 +9,12 @@ import {
   mixtureOfBlock,
 } from "../../db/cautions.ts";
 import { slice } from "../../db/compounds.ts";
-import { importLibrary } from "../../db/seed/library.ts";
-import { type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, type TestDatabase } from "../support/database.ts";
 
 let store: TestDatabase;
 let rules: MixingRules;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   rules = await mixingRules(store.db);
 });
 afterAll(() => store.close());

@@ -11,15 +11,13 @@ import {
 } from "../../db/compounds.ts";
 import { comparedFormula, hill, looseFormulas, parseFormula } from "../../db/formula.ts";
 import { comparedName } from "../../db/names.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import { seededRandom } from "../support/corpus.ts";
-import { type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, type TestDatabase } from "../support/database.ts";
 import { allNames } from "../support/library.ts";
 
 let store: TestDatabase;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
 });
 afterAll(() => store.close());
 

@@ -3,17 +3,15 @@ import { z } from "zod";
 import { readRows } from "../../db/client.ts";
 import { deriveRevision, listUnderived } from "../../db/derive.ts";
 import { keptSolves, resultFor } from "../../db/results.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import type { EquilibriumBlock } from "../../editor/schema/index.ts";
-import { type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, type TestDatabase } from "../support/database.ts";
 import { addBlock, countRows, type Lab, makeDraft, makeLab, rowOf, sql } from "../support/laboratory.ts";
 
 let store: TestDatabase;
 let lab: Lab;
 let revisionId: string;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   lab = await makeLab(store.db);
   ({ revisionId } = await makeDraft(store.db, lab));
 });

@@ -1,6 +1,5 @@
 // Finding entries, against a store whose answers are known beforehand.
 import { readFileSync } from "node:fs";
-import { sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { z } from "zod";
 import { searchCompounds } from "../../db/compounds.ts";
@@ -15,9 +14,8 @@ import {
   searchEntries,
   searchRows,
 } from "../../db/search.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import { explain, type KnownEntry, type KnownRevision, nameAttachment, writeCorpus } from "../support/corpus.ts";
-import { makeNotebook, makePerson, type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, makeNotebook, makePerson, sql, type TestDatabase } from "../support/database.ts";
 
 let store: TestDatabase;
 let corpus: KnownEntry[];
@@ -54,8 +52,7 @@ const COMPOUNDS = [
 ];
 
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   const [descaling, rinse, pilot] = [
     await makeNotebook(store.db, { code: "DSB" }),
     await makeNotebook(store.db, { code: "RNB" }),

@@ -2,10 +2,9 @@ import { createHash } from "node:crypto";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { beginEntry, readEntry } from "../../db/entries.ts";
 import { MEANINGS } from "../../db/manifest.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import { contentToSign, signAsAuthor } from "../../db/signatures.ts";
 import { markWhole, openRevision } from "../../db/witnessing.ts";
-import { signIn, type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, signIn, type TestDatabase } from "../support/database.ts";
 import {
   addBlock,
   countRows,
@@ -25,8 +24,7 @@ import {
 let store: TestDatabase;
 let lab: Lab;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   lab = await makeLab(store.db);
 });
 afterAll(() => store.close());

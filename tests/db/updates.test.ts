@@ -6,9 +6,8 @@ import { readRows } from "../../db/client.ts";
 import { beginEntry, readEntry } from "../../db/entries.ts";
 import { newId } from "../../db/ids.ts";
 import { removeMember } from "../../db/notebooks.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import { appendUpdate, LARGEST_UPDATE_BYTES, pageState, strayUpdates, updatesAfter } from "../../db/updates.ts";
-import { signIn, type TestDatabase, testDatabase, theAdministrator } from "../support/database.ts";
+import { libraryDatabase, signIn, type TestDatabase, theAdministrator } from "../support/database.ts";
 import {
   addBlock,
   countRows,
@@ -27,8 +26,7 @@ import {
 let store: TestDatabase;
 let lab: Lab;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   lab = await makeLab(store.db);
 });
 afterAll(() => store.close());

@@ -3,10 +3,9 @@ import { z } from "zod";
 import { writerOf, writersOfText } from "../../db/authorship.ts";
 import { readRows } from "../../db/client.ts";
 import { readEntry } from "../../db/entries.ts";
-import { importLibrary } from "../../db/seed/library.ts";
 import { pageState } from "../../db/updates.ts";
 import { checkRevision, countersign, markWhole, openRevision, returnToAuthor } from "../../db/witnessing.ts";
-import { signIn, type TestDatabase, testDatabase } from "../support/database.ts";
+import { libraryDatabase, signIn, type TestDatabase } from "../support/database.ts";
 import {
   addBlock,
   countRows,
@@ -28,8 +27,7 @@ import {
 let store: TestDatabase;
 let lab: Lab;
 beforeAll(async () => {
-  store = await testDatabase();
-  await importLibrary(store.db);
+  store = await libraryDatabase();
   lab = await makeLab(store.db);
 });
 afterAll(() => store.close());

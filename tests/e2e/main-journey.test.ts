@@ -1,9 +1,22 @@
 // The main job, from a draft to a witnessed entry that a supervisor finds. Each person has a browser of their own.
 import type { Page } from "@playwright/test";
+import {
+  addRow,
+  beginEntry,
+  countersign,
+  putInBlock,
+  readToTheEnd,
+  signAsAuthor,
+  title,
+  writeParagraph,
+} from "./support/acts.ts";
 import { expect, expectAccessible, type Someone, test } from "./support/test.ts";
-import { addRow, beginEntry, countersign, putInBlock, readToTheEnd, signAsAuthor, title, writeParagraph } from "./support/acts.ts";
 
-test("an entry is written, returned, revised, countersigned and found by a salt that it does not name (SGN-14, FND-01)", async ({ as, laboratory, expectAnswers }) => {
+test("an entry is written, returned, revised, countersigned and found by a salt that it does not name (SGN-14, FND-01)", async ({
+  as,
+  laboratory,
+  expectAnswers,
+}) => {
   test.setTimeout(300_000);
   const okafor = await as("R. Okafor");
   const label = await beginEntry(okafor.page, "Descaling baths");
@@ -51,7 +64,10 @@ test("an entry is written, returned, revised, countersigned and found by a salt 
   const novak = await as("P. Novak");
   await novak.page.getByRole("link", { name: "Search" }).first().click();
   await novak.page.getByRole("combobox", { name: "Compound" }).fill("trisodium citrate");
-  await novak.page.getByRole("option", { name: /trisodium citrate/ }).first().click();
+  await novak.page
+    .getByRole("option", { name: /trisodium citrate/ })
+    .first()
+    .click();
   await novak.page.getByRole("button", { name: "Find entries" }).click();
   await expect(novak.page.getByRole("link", { name: label }).first()).toBeVisible();
   await expect(novak.page.getByText(/E1.*citric acid.*0\.100 mol\/L/).first()).toBeVisible();
@@ -63,7 +79,10 @@ test("an entry is written, returned, revised, countersigned and found by a salt 
   await expect(outsider.page.getByRole("heading", { name: "There is nothing here for you" })).toBeVisible();
   await outsider.page.goto("/search");
   await outsider.page.getByRole("combobox", { name: "Compound" }).fill("trisodium citrate");
-  await outsider.page.getByRole("option", { name: /trisodium citrate/ }).first().click();
+  await outsider.page
+    .getByRole("option", { name: /trisodium citrate/ })
+    .first()
+    .click();
   await outsider.page.getByRole("button", { name: "Find entries" }).click();
   await expect(outsider.page.getByText("No entry that you may read fits.")).toBeVisible();
 });
@@ -88,7 +107,12 @@ test("a contributor cannot countersign, and is told why (SGN-09, SGN-10)", async
   await expect(brandt.page).toHaveURL(new RegExp(`/entries/${label}$`));
 });
 
-test("five wrong passwords in any mix close both doors (SGN-05)", async ({ as, laboratory, expectAnswers, browser }) => {
+test("five wrong passwords in any mix close both doors (SGN-05)", async ({
+  as,
+  laboratory,
+  expectAnswers,
+  browser,
+}) => {
   const brandt = await as("L. Brandt");
   const label = await beginEntry(brandt.page, "Rinse baths");
   await title(brandt.page, "A page that is not signed today");

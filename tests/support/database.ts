@@ -2,11 +2,12 @@
 // names. And people, notebooks and actors, made by the verbs themselves.
 import { createHash } from "node:crypto";
 import { existsSync } from "node:fs";
-import { mkdir, rename, writeFile } from "node:fs/promises";
+import { mkdir, readdir, readFile, rename, rm, stat, writeFile } from "node:fs/promises";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { PGlite } from "@electric-sql/pglite";
 import { sql } from "drizzle-orm";
+import { drizzle } from "drizzle-orm/pglite";
 import pg from "pg";
 import { type Database, type Db, embeddedOptions, openDatabase } from "../../db/client.ts";
 import { newId } from "../../db/ids.ts";
@@ -15,6 +16,7 @@ import { applyMigrations, readMigrations } from "../../db/migrate.ts";
 import { addMember, createNotebook } from "../../db/notebooks.ts";
 import { actorOf } from "../../db/people.ts";
 import type { Actor, Role } from "../../db/policy.ts";
+import { importLibrary } from "../../db/seed/library.ts";
 
 export type TestDatabase = Database & {
   /** "embedded" or "server", for the few tests that only one of them can answer */
@@ -23,23 +25,52 @@ export type TestDatabase = Database & {
   again(): Promise<Database | null>;
 };
 
+/** What a store is a copy of: migrated and empty, or with the library in it. */
+type Template = "empty" | "library";
+
 /** A migrated, empty store. Call `close` in `afterAll`: it also drops the server's database. */
 export function testDatabase(): Promise<TestDatabase> {
-  const server = process.env["TEST_DATABASE_URL"];
-  return server === undefined || server === "" ? embeddedCopy() : serverCopy(server);
+  return copyOf("empty");
 }
 
-async function embeddedCopy(): Promise<TestDatabase> {
-  const dump = await migratedDump();
-  const database = await openDatabase(`memory:${dump}`);
+/** A migrated store with the library in it, as every store has it once the program has started on it. */
+export function libraryDatabase(): Promise<TestDatabase> {
+  return copyOf("library");
+}
+
+/** Makes both templates, so that no test file waits for another that makes them: vitest's global set-up. */
+export async function makeTemplates(): Promise<void> {
+  const server = serverUrl();
+  if (server === null) await embeddedDump("library");
+  else
+    await withServer(server, async (client) => {
+      await serverTemplate(client, server, "library");
+    });
+}
+
+function copyOf(template: Template): Promise<TestDatabase> {
+  const server = serverUrl();
+  return server === null ? embeddedCopy(template) : serverCopy(server, template);
+}
+
+function serverUrl(): string | null {
+  const url = process.env.TEST_DATABASE_URL;
+  return url === undefined || url === "" ? null : url;
+}
+
+async function embeddedCopy(template: Template): Promise<TestDatabase> {
+  const database = await openDatabase(`memory:${await embeddedDump(template)}`);
   return { ...database, again: async () => null };
 }
 
-/** The dump of a migrated store, made once for each state of the migrations. */
-async function migratedDump(): Promise<string> {
+/** The dump of such a store, made once for each state of what it is made from. */
+async function embeddedDump(template: Template): Promise<string> {
   const folder = join(tmpdir(), "counterleaf-tests");
-  const path = join(folder, `${await migrationsHash()}.tar`);
-  if (existsSync(path)) return path;
+  const hash = await hashOfSources();
+  const path = (wanted: Template) => join(folder, `${hash}-${wanted}.tar`);
+  if (existsSync(path(template))) return path(template);
+  await mkdir(folder, { recursive: true });
+  await forgetOldDumps(folder);
   // Small segments of the write-ahead log: the dump, which every test file loads, is a third of the size.
   const client = await PGlite.create({ ...embeddedOptions, initDbStartParams: ["--wal-segsize=1"] });
   await client.transaction((tx) =>
@@ -50,34 +81,36 @@ async function migratedDump(): Promise<string> {
       rows: async (text, values) => (await tx.query(text, values)).rows,
     }),
   );
-  const dump = new Uint8Array(await (await client.dumpDataDir("none")).arrayBuffer());
+  await keepDump(client, path("empty"));
+  await importLibrary(drizzle(client));
+  await client.exec("vacuum analyze");
+  await keepDump(client, path("library"));
   await client.close();
-  await mkdir(folder, { recursive: true });
-  // Several test files may get here at once; each writes its own file, and the last one to move it wins with the same bytes.
+  return path(template);
+}
+
+async function keepDump(client: PGlite, path: string): Promise<void> {
+  await client.exec("checkpoint");
+  const dump = new Uint8Array(await (await client.dumpDataDir("none")).arrayBuffer());
+  // Several test files may get here at once; each writes its own file, and the last one to move it wins with the same store.
   const own = `${path}.${process.pid}.${newId()}`;
   await writeFile(own, dump);
   await rename(own, path);
-  return path;
 }
 
-async function serverCopy(server: string): Promise<TestDatabase> {
-  const template = `counterleaf_template_${(await migrationsHash()).slice(0, 16)}`;
+async function forgetOldDumps(folder: string): Promise<void> {
+  const dayAgo = Date.now() - 86_400_000;
+  for (const name of await readdir(folder)) {
+    const path = join(folder, name);
+    if ((await stat(path)).mtimeMs < dayAgo) await rm(path, { force: true });
+  }
+}
+
+async function serverCopy(server: string, template: Template): Promise<TestDatabase> {
   const name = `counterleaf_${newId().replaceAll("-", "")}`;
   await withServer(server, async (client) => {
-    // One maker of the template at a time, and nobody copies it half made.
-    await client.query("select pg_advisory_lock(71)");
-    const found = await client.query("select 1 from pg_database where datname = $1", [template]);
-    if (found.rowCount === 0) {
-      const making = `${template}_making`;
-      await client.query(`drop database if exists ${making}`);
-      await client.query(`create database ${making}`);
-      const database = await openDatabase(withName(server, making));
-      await database.migrate();
-      await database.close();
-      await client.query(`alter database ${making} rename to ${template}`);
-    }
-    await client.query(`create database ${name} template ${template}`);
-    await client.query("select pg_advisory_unlock(71)");
+    const from = await serverTemplate(client, server, template);
+    await client.query(`create database ${name} template ${from}`);
   });
   const url = withName(server, name);
   const database = await openDatabase(url);
@@ -99,6 +132,28 @@ async function serverCopy(server: string): Promise<TestDatabase> {
   };
 }
 
+/** The name of the server's database to copy. One maker at a time, and nobody copies it half made. */
+async function serverTemplate(client: pg.Client, server: string, template: Template): Promise<string> {
+  const hash = (await hashOfSources()).slice(0, 16);
+  const nameOf = (which: Template) => `counterleaf_${which}_${hash}`;
+  await client.query("select pg_advisory_lock(71)");
+  const make = async (which: Template, from: string, fill: (database: Database) => Promise<unknown>) => {
+    const found = await client.query("select 1 from pg_database where datname = $1", [nameOf(which)]);
+    if (found.rowCount !== 0) return;
+    const making = `${nameOf(which)}_making`;
+    await client.query(`drop database if exists ${making}`);
+    await client.query(`create database ${making} template ${from}`);
+    const database = await openDatabase(withName(server, making));
+    await fill(database);
+    await database.close();
+    await client.query(`alter database ${making} rename to ${nameOf(which)}`);
+  };
+  await make("empty", "template1", (database) => database.migrate());
+  if (template === "library") await make("library", nameOf("empty"), (database) => importLibrary(database.db));
+  await client.query("select pg_advisory_unlock(71)");
+  return nameOf(template);
+}
+
 async function withServer(url: string, use: (client: pg.Client) => Promise<void>): Promise<void> {
   const client = new pg.Client({ connectionString: url });
   await client.connect();
@@ -115,9 +170,16 @@ function withName(url: string, name: string): string {
   return address.href;
 }
 
-async function migrationsHash(): Promise<string> {
+/** Of everything that a template is made from: the migrations, and the room that fills the tables. */
+async function hashOfSources(): Promise<string> {
   const hash = createHash("sha256");
   for (const { tag, sha256 } of await readMigrations()) hash.update(`${tag} ${sha256}\n`);
+  for (const file of (await readdir("db", { recursive: true, withFileTypes: true }))
+    .filter((each) => each.isFile())
+    .map((each) => join(each.parentPath, each.name))
+    .sort()) {
+    hash.update(`${file}\n`).update(await readFile(file));
+  }
   return hash.digest("hex");
 }
 

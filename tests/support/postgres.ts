@@ -1,6 +1,7 @@
 // Debian's PostgreSQL for the tests: a cluster of its own in a folder of its own, on a free port, run as the user "postgres"
 // because initdb refuses root, and stopped by its process id.
-// As a command: `tsx tests/support/postgres.ts npx vitest run tests/db` runs what follows with TEST_DATABASE_URL set.
+// As a command: `tsx tests/support/postgres.ts npx vitest run tests/db` runs what follows with TEST_DATABASE_URL set; with
+// nothing behind it, it prints the address on a line and serves until its input ends.
 import { execFileSync, spawn } from "node:child_process";
 import { chownSync, existsSync, mkdtempSync, readdirSync, rmSync, writeFileSync } from "node:fs";
 import { createServer } from "node:net";
@@ -140,10 +141,24 @@ async function runWith(command: string, parameters: string[]): Promise<number> {
   return code;
 }
 
+/** Prints the address, and serves until the input ends: whoever started it has gone or wants no more. */
+async function serve(): Promise<number> {
+  const postgres = await startPostgres();
+  process.stdout.write(`${postgres.url}\n`);
+  await new Promise<void>((done) => {
+    process.stdin.once("end", done).once("close", done).resume();
+    process.once("SIGINT", () => done());
+    process.once("SIGTERM", () => done());
+  });
+  process.stdin.destroy();
+  await postgres.stop();
+  return 0;
+}
+
 const [, script, command, ...parameters] = process.argv;
-if (script === fileURLToPath(import.meta.url) && command !== undefined) {
+if (script === fileURLToPath(import.meta.url)) {
   try {
-    process.exitCode = await runWith(command, parameters);
+    process.exitCode = command === undefined ? await serve() : await runWith(command, parameters);
   } catch (fault) {
     process.stderr.write(`${fault instanceof Error ? fault.message : String(fault)}\n`);
     process.exitCode = 1;

@@ -46,7 +46,13 @@ export function NewPasswordForm({ known, asksIdentity, words, send, then }: Prop
             error={errors.printedName?.message}
             {...form.register("printedName")}
           />
-          <TextField label="E-mail" type="email" autoComplete="username" error={errors.email?.message} {...form.register("email")} />
+          <TextField
+            label="E-mail"
+            type="email"
+            autoComplete="username"
+            error={errors.email?.message}
+            {...form.register("email")}
+          />
         </>
       ) : null}
       <TextField
@@ -57,8 +63,19 @@ export function NewPasswordForm({ known, asksIdentity, words, send, then }: Prop
         error={errors.password?.message}
         {...form.register("password")}
       />
-      <TextField label="The same again" type="password" autoComplete="new-password" error={errors.again?.message} {...form.register("again")} />
-      <Button type="submit" kind="first" pending={isSubmitting || (isSubmitSuccessful && !errors.root && !errors.password)} pendingWords="Setting it">
+      <TextField
+        label="The same again"
+        type="password"
+        autoComplete="new-password"
+        error={errors.again?.message}
+        {...form.register("again")}
+      />
+      <Button
+        type="submit"
+        kind="first"
+        pending={isSubmitting || (isSubmitSuccessful && !errors.root && !errors.password)}
+        pendingWords="Setting it"
+      >
         {words}
       </Button>
     </form>

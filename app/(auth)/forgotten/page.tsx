@@ -8,7 +8,9 @@ export const metadata: Metadata = { title: "Forgotten password" };
 export default function ForgottenPage() {
   return (
     <Leaf className="small">
-      <LeafTitle under="A link to choose a new one goes to your e-mail. It works once, for an hour.">Forgotten password</LeafTitle>
+      <LeafTitle under="A link to choose a new one goes to your e-mail. It works once, for an hour.">
+        Forgotten password
+      </LeafTitle>
       <ForgottenForm ask={askForLink} />
     </Leaf>
   );

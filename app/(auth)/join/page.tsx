@@ -1,9 +1,9 @@
 import type { Metadata } from "next";
 import Link from "next/link";
-import { Refused } from "../../../db/errors.ts";
-import { readInvitation } from "../../../db/invitations.ts";
 import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { Says } from "../../../components/ui/says.tsx";
+import { Refused } from "../../../db/errors.ts";
+import { readInvitation } from "../../../db/invitations.ts";
 import { database } from "../../_server/database.ts";
 import { JoinForm } from "./_components/join-form.tsx";
 import { takePlace } from "./actions.ts";
@@ -27,7 +27,15 @@ export default async function JoinPage({ searchParams }: { searchParams: Promise
           <LeafTitle under="You choose it yourself; nobody else knows it or can look it up.">
             {invited.printedName === null ? "Make the first account" : `Welcome, ${invited.printedName}`}
           </LeafTitle>
-          <JoinForm code={code} known={invited.printedName === null || invited.email === null ? null : { printedName: invited.printedName, email: invited.email }} join={takePlace} />
+          <JoinForm
+            code={code}
+            known={
+              invited.printedName === null || invited.email === null
+                ? null
+                : { printedName: invited.printedName, email: invited.email }
+            }
+            join={takePlace}
+          />
         </>
       )}
     </Leaf>

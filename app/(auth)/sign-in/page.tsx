@@ -1,8 +1,8 @@
 import type { Metadata } from "next";
 import { redirect } from "next/navigation";
-import demoPeople from "../../../db/seed/demo-people.json" with { type: "json" };
 import { Leaf } from "../../../components/leaf/leaf.tsx";
 import { WordmarkOnly } from "../../../components/leaf/wordmark.tsx";
+import demoPeople from "../../../db/seed/demo-people.json" with { type: "json" };
 import { pageActor } from "../../_server/actor.ts";
 import { settings } from "../../_server/env.ts";
 import { DemoDoor } from "./_components/demo-door.tsx";
@@ -19,7 +19,9 @@ export default async function SignInPage({ searchParams }: { searchParams: Promi
       <h1 className="door-name">
         <WordmarkOnly large />
       </h1>
-      <p className="under-title">A shared laboratory notebook. What is written here is signed, countersigned and kept.</p>
+      <p className="under-title">
+        A shared laboratory notebook. What is written here is signed, countersigned and kept.
+      </p>
       <DemoDoor people={settings().demo ? demoPeople : []} next={next} enter={enter} />
     </Leaf>
   );
@@ -27,5 +29,7 @@ export default async function SignInPage({ searchParams }: { searchParams: Promi
 
 /** Only a path of our own: never another site's address that somebody put into a link. */
 function ownPath(to: string | string[] | undefined): string {
-  return typeof to === "string" && /^\/(?![/\\])[\w\-./?=&%~:+,]*$/.test(to) && !to.startsWith("/sign-in") ? to : "/desk";
+  return typeof to === "string" && /^\/(?![/\\])[\w\-./?=&%~:+,]*$/.test(to) && !to.startsWith("/sign-in")
+    ? to
+    : "/desk";
 }

@@ -1,7 +1,7 @@
 "use server";
+import { z } from "zod";
 import { setPreferences } from "../../../db/people.ts";
 import { endOtherSessions, endSession } from "../../../db/sessions.ts";
-import { z } from "zod";
 import { changePassword } from "../../_server/account.ts";
 import { answer } from "../../_server/answer.ts";
 import { passwordChange, preferences, sessionChoice } from "./schema.ts";

@@ -1,11 +1,11 @@
 import type { Metadata } from "next";
-import { listSessions } from "../../../db/sessions.ts";
+import { formatDateTime } from "../../../components/format.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { SideRow } from "../../../components/leaf/side-row.tsx";
-import { formatDateTime } from "../../../components/format.ts";
 import { PlainTable } from "../../../components/ui/plain-table.tsx";
 import { Notice } from "../../../components/ui/says.tsx";
+import { listSessions } from "../../../db/sessions.ts";
 import { readForPage } from "../../_server/page-read.ts";
 import { EndSession } from "./_components/end-session.tsx";
 import { PasswordForm } from "./_components/password-form.tsx";
@@ -27,14 +27,22 @@ export default async function AccountPage() {
         </Counterfoil>
       }
     >
-      <LeafTitle under="How numbers and times are shown to you, your password, and where you are signed in.">Your account</LeafTitle>
+      <LeafTitle under="How numbers and times are shown to you, your password, and where you are signed in.">
+        Your account
+      </LeafTitle>
       {actor.signingHeld ? (
         <Notice kind="warn" finding="Signing is held.">
-          An administrator began a reset of your password. A supervisor or another administrator has to confirm who you are before you sign.
+          An administrator began a reset of your password. A supervisor or another administrator has to confirm who you
+          are before you sign.
         </Notice>
       ) : null}
       <SideRow label="Numbers and times" level={2} first>
-        <PreferencesForm decimalSign={actor.decimalSign} timeZone={actor.timeZone} zones={["UTC", ...Intl.supportedValuesOf("timeZone")]} save={savePreferences} />
+        <PreferencesForm
+          decimalSign={actor.decimalSign}
+          timeZone={actor.timeZone}
+          zones={["UTC", ...Intl.supportedValuesOf("timeZone")]}
+          save={savePreferences}
+        />
       </SideRow>
       <SideRow label="Password" level={2}>
         <PasswordForm save={savePassword} />

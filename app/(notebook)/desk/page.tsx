@@ -1,15 +1,15 @@
 import type { Metadata } from "next";
 import Link from "next/link";
 import type { ReactNode } from "react";
-import { type DeskLine, desk } from "../../../db/desk.ts";
-import { listNotebooks } from "../../../db/notebooks.ts";
-import { listHeldPeople } from "../../../db/people.ts";
+import { formatDate, formatDateTime, relativeDay } from "../../../components/format.ts";
 import { Counterfoil, StubSection } from "../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { SideRow } from "../../../components/leaf/side-row.tsx";
 import { StateMark } from "../../../components/leaf/state-mark.tsx";
-import { formatDate, formatDateTime, relativeDay } from "../../../components/format.ts";
 import { EmptyState } from "../../../components/ui/empty-state.tsx";
+import { type DeskLine, desk } from "../../../db/desk.ts";
+import { listNotebooks } from "../../../db/notebooks.ts";
+import { listHeldPeople } from "../../../db/people.ts";
 import { BeginEntry } from "../../_components/begin-entry.tsx";
 import { readForPage } from "../../_server/page-read.ts";
 import { begin, confirmPerson } from "../actions.ts";
@@ -17,13 +17,23 @@ import { ConfirmPerson } from "./_components/confirm-person.tsx";
 
 export const metadata: Metadata = { title: "Desk" };
 
-const WORDS_OF_COUNT = ["Nothing is", "One thing is", "Two things are", "Three things are", "Four things are", "Five things are", "Six things are"];
+const WORDS_OF_COUNT = [
+  "Nothing is",
+  "One thing is",
+  "Two things are",
+  "Three things are",
+  "Four things are",
+  "Five things are",
+  "Six things are",
+];
 
 export default async function DeskPage() {
   const { actor, read } = await readForPage(async (person, db) => ({
     lies: await desk(db, person),
     notebooks: person.roles.includes("researcher") ? await listNotebooks(db, person) : [],
-    held: person.roles.some((role) => role === "supervisor" || role === "administrator") ? await listHeldPeople(db, person) : [],
+    held: person.roles.some((role) => role === "supervisor" || role === "administrator")
+      ? await listHeldPeople(db, person)
+      : [],
   }));
   const { drafts, returned, toCountersign, signed } = read.lies;
   const held = read.held.filter(({ id }) => id !== actor.id);
@@ -54,17 +64,23 @@ export default async function DeskPage() {
         </Counterfoil>
       }
     >
-      <LeafTitle under={formatDate(now, zone, { weekday: true })}>{WORDS_OF_COUNT[count] ?? `${count} things are`} yours to do</LeafTitle>
+      <LeafTitle under={formatDate(now, zone, { weekday: true })}>
+        {WORDS_OF_COUNT[count] ?? `${count} things are`} yours to do
+      </LeafTitle>
       {count === 0 ? (
         <EmptyState finding="Your desk is clear.">
-          {read.notebooks.length > 0 ? "Begin an entry at the right, or read in your notebooks." : "What waits for you will lie here."}
+          {read.notebooks.length > 0
+            ? "Begin an entry at the right, or read in your notebooks."
+            : "What waits for you will lie here."}
         </EmptyState>
       ) : null}
       <Pile label="Returned" note={`${returned.length}, with a reason`} lines={returned}>
         {(line) => (
           <Line key={line.entryId} line={line} go="Go on writing">
             {line.reason === null ? null : <blockquote className="reason">{line.reason}</blockquote>}
-            <p className="note">Revision {line.revision} is open for you since {formatDateTime(line.since, zone)}.</p>
+            <p className="note">
+              Revision {line.revision} is open for you since {formatDateTime(line.since, zone)}.
+            </p>
           </Line>
         )}
       </Pile>
@@ -82,7 +98,8 @@ export default async function DeskPage() {
           {held.map(({ id, printedName, signingHeldAt }) => (
             <div key={id} className="desk-line">
               <p>
-                <b>{printedName}</b>’s password was reset by an administrator{signingHeldAt === null ? "" : `, ${relativeDay(signingHeldAt, now, zone)}`}.
+                <b>{printedName}</b>’s password was reset by an administrator
+                {signingHeldAt === null ? "" : `, ${relativeDay(signingHeldAt, now, zone)}`}.
               </p>
               <ConfirmPerson personId={id} name={printedName} confirm={confirmPerson} />
             </div>
@@ -102,7 +119,17 @@ export default async function DeskPage() {
   );
 }
 
-function Pile({ label, note, lines, children }: { label: string; note: string; lines: DeskLine[]; children: (line: DeskLine) => ReactNode }) {
+function Pile({
+  label,
+  note,
+  lines,
+  children,
+}: {
+  label: string;
+  note: string;
+  lines: DeskLine[];
+  children: (line: DeskLine) => ReactNode;
+}) {
   if (lines.length === 0) return null;
   return (
     <SideRow label={label} note={note} level={2}>
@@ -111,7 +138,17 @@ function Pile({ label, note, lines, children }: { label: string; note: string; l
   );
 }
 
-function Line({ line, go, href = `/entries/${line.label}`, children }: { line: DeskLine; go: string; href?: string; children: ReactNode }) {
+function Line({
+  line,
+  go,
+  href = `/entries/${line.label}`,
+  children,
+}: {
+  line: DeskLine;
+  go: string;
+  href?: string;
+  children: ReactNode;
+}) {
   return (
     <div className="desk-line">
       <span className="mono">{line.label}</span>
@@ -132,7 +169,9 @@ const OVERDUE_DAYS = 14;
 /** From day 7 "waiting", from day 14 "overdue", in words and with a mark (SGN-17). */
 function Age({ line, since, unsigned }: { line: DeskLine; since: string; unsigned?: boolean }) {
   const what = unsigned ? "unsigned" : "without a witness";
-  if (line.days >= OVERDUE_DAYS) return <StateMark state="overdue">{`${since}; overdue, ${line.days} days ${what}`}</StateMark>;
-  if (line.days >= WAITING_DAYS) return <StateMark state="waiting">{`${since}; waiting, ${line.days} days ${what}`}</StateMark>;
+  if (line.days >= OVERDUE_DAYS)
+    return <StateMark state="overdue">{`${since}; overdue, ${line.days} days ${what}`}</StateMark>;
+  if (line.days >= WAITING_DAYS)
+    return <StateMark state="waiting">{`${since}; waiting, ${line.days} days ${what}`}</StateMark>;
   return <>{since}</>;
 }

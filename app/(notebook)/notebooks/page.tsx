@@ -1,10 +1,10 @@
 import type { Metadata } from "next";
 import Link from "next/link";
-import { listNotebooks } from "../../../db/notebooks.ts";
-import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { formatCount } from "../../../components/format.ts";
+import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { EmptyState } from "../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../components/ui/plain-table.tsx";
+import { listNotebooks } from "../../../db/notebooks.ts";
 import { readForPage } from "../../_server/page-read.ts";
 
 export const metadata: Metadata = { title: "Notebooks" };
@@ -15,7 +15,9 @@ export default async function NotebooksPage() {
   return (
     <Leaf className="wide">
       <LeafTitle under="The notebooks whose member you are.">
-        {notebooks.length === 1 ? `One notebook is open to you` : `${formatCount(notebooks.length)} notebooks are open to you`}
+        {notebooks.length === 1
+          ? `One notebook is open to you`
+          : `${formatCount(notebooks.length)} notebooks are open to you`}
       </LeafTitle>
       {only === undefined ? (
         <EmptyState finding="You are not a member of a notebook yet.">
@@ -33,7 +35,14 @@ export default async function NotebooksPage() {
           ]}
           rows={notebooks.map(({ id, code, title, about, entries }) => ({
             key: id,
-            cells: [code, <Link key="to" href={`/notebooks/${code}`}>{title}</Link>, about, String(entries)],
+            cells: [
+              code,
+              <Link key="to" href={`/notebooks/${code}`}>
+                {title}
+              </Link>,
+              about,
+              String(entries),
+            ],
           }))}
         />
       )}

@@ -1,18 +1,18 @@
 import type { Metadata } from "next";
 import Link from "next/link";
-import { expansion } from "../../../db/compounds.ts";
-import { countEntries, searchChoices, searchEntries, type SearchHit, type SearchQuery } from "../../../db/search.ts";
-import { STATES } from "../../../db/states.ts";
+import { formatCount, formatDate, formatDateTime, formatPh } from "../../../components/format.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../components/leaf/leaf.tsx";
 import { StateMark } from "../../../components/leaf/state-mark.tsx";
-import { formatCount, formatDate, formatDateTime, formatPh } from "../../../components/format.ts";
 import { buttonClass } from "../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../components/ui/plain-table.tsx";
 import { Says } from "../../../components/ui/says.tsx";
-import type { Actor } from "../../../db/policy.ts";
 import type { Db } from "../../../db/client.ts";
+import { expansion } from "../../../db/compounds.ts";
+import type { Actor } from "../../../db/policy.ts";
+import { countEntries, type SearchHit, type SearchQuery, searchChoices, searchEntries } from "../../../db/search.ts";
+import { STATES } from "../../../db/states.ts";
 import { readForPage } from "../../_server/page-read.ts";
 import { searchAddress } from "../../api/search/csv/schema.ts";
 import { SearchForm } from "./_components/search-form.tsx";
@@ -31,9 +31,25 @@ export default async function SearchPage({ searchParams }: Props) {
   const { choices, faults, found } = read;
   return (
     <Leaf counterfoil={found === null ? undefined : <FoundStub found={found} address={address} />}>
-      <LeafTitle under="All entries that you may read, by what was poured in, by words, and by who and when.">Search</LeafTitle>
-      <SearchForm asked={address} compound={found?.expanded?.compound ?? null} choices={choices} states={STATES} faults={faults} />
-      {found === null ? null : <Hits found={found} address={address} timeZone={actor.timeZone} decimalSign={actor.decimalSign} isFirst={after === undefined} />}
+      <LeafTitle under="All entries that you may read, by what was poured in, by words, and by who and when.">
+        Search
+      </LeafTitle>
+      <SearchForm
+        asked={address}
+        compound={found?.expanded?.compound ?? null}
+        choices={choices}
+        states={STATES}
+        faults={faults}
+      />
+      {found === null ? null : (
+        <Hits
+          found={found}
+          address={address}
+          timeZone={actor.timeZone}
+          decimalSign={actor.decimalSign}
+          isFirst={after === undefined}
+        />
+      )}
     </Leaf>
   );
 }
@@ -66,18 +82,29 @@ function FoundStub({ found, address }: { found: Found; address: Asked }) {
   const { expanded, isNarrowed, total } = found;
   return (
     <Counterfoil
-      head={<StubHead number={formatCount(total)} of={expanded === null ? "entries you may read fit" : `entries you may read in which ${expanded.compound.name} was recognised`} />}
+      head={
+        <StubHead
+          number={formatCount(total)}
+          of={
+            expanded === null
+              ? "entries you may read fit"
+              : `entries you may read in which ${expanded.compound.name} was recognised`
+          }
+        />
+      }
     >
       {expanded === null ? null : (
         <StubSection title={isNarrowed ? "Narrowed to this one" : "Taken in"}>
           {isNarrowed ? (
             <p>
-              Only <b>{expanded.compound.name}</b> itself. <Link href={addressOf({ ...address, narrow: "" })}>Take its salts, hydrates and other forms in</Link>
+              Only <b>{expanded.compound.name}</b> itself.{" "}
+              <Link href={addressOf({ ...address, narrow: "" })}>Take its salts, hydrates and other forms in</Link>
             </p>
           ) : (
             <>
               <p>
-                <b>{expanded.families.map(({ name }) => name).join(", ") || expanded.compound.name}</b>, with {expanded.compounds.length} forms, salts, hydrates and solutions.
+                <b>{expanded.families.map(({ name }) => name).join(", ") || expanded.compound.name}</b>, with{" "}
+                {expanded.compounds.length} forms, salts, hydrates and solutions.
               </p>
               <details>
                 <summary>Which ones</summary>
@@ -102,7 +129,9 @@ function FoundStub({ found, address }: { found: Found; address: Asked }) {
         <a className={buttonClass("plain")} href={`/api/search/csv?${new URLSearchParams(address)}`} download>
           Table as CSV
         </a>
-        <p className="note">As of {formatDateTime(found.asOf)}. The index, the names known and your rights bound what is found.</p>
+        <p className="note">
+          As of {formatDateTime(found.asOf)}. The index, the names known and your rights bound what is found.
+        </p>
       </StubSection>
     </Counterfoil>
   );
@@ -133,7 +162,10 @@ function Hits({ found, address, timeZone, decimalSign, isFirst }: HitsProps) {
           { id: "state", head: "State" },
         ]}
         decimalSign={decimalSign}
-        rows={found.hits.map((hit) => ({ key: `${hit.entryId}.${hit.revision}`, cells: cellsOf(hit, timeZone, decimalSign) }))}
+        rows={found.hits.map((hit) => ({
+          key: `${hit.entryId}.${hit.revision}`,
+          cells: cellsOf(hit, timeZone, decimalSign),
+        }))}
       />
       {found.next === null ? null : (
         <p>
@@ -144,7 +176,8 @@ function Hits({ found, address, timeZone, decimalSign, isFirst }: HitsProps) {
       )}
       {found.hits.some((hit) => hit.calculatedPH.length > 0) ? (
         <Says kind="info">
-          A calculated pH is an estimate from a stated model, which stands on the page; the safety data sheet, local rules and a licensed professional’s judgement come first.
+          A calculated pH is an estimate from a stated model, which stands on the page; the safety data sheet, local
+          rules and a licensed professional’s judgement come first.
         </Says>
       ) : null}
     </>
@@ -164,6 +197,7 @@ function cellsOf(hit: SearchHit, timeZone: string, decimalSign: "." | ",") {
         {hit.title || "Without a title"}
       </Link>
       {hit.lines.map(({ line }, place) => (
+        // biome-ignore lint/suspicious/noArrayIndexKey: equal lines may stand twice, and a hit's lines are never reordered
         <small key={`${place}.${line}`} className="hit-line">
           {line}
         </small>

@@ -36,12 +36,19 @@ export async function putInBlock(page: Page): Promise<void> {
 }
 
 /** Adds row number `row` to the last block and fills it in. */
-export async function addRow(page: Page, row: number, given: { compound: string; amount: string; unit: string }): Promise<void> {
+export async function addRow(
+  page: Page,
+  row: number,
+  given: { compound: string; amount: string; unit: string },
+): Promise<void> {
   const block = page.getByRole("region", { name: /^Equilibrium block E\d+$/ }).last();
   const name = block.getByRole("combobox", { name: `Poured in, row ${row}` });
   if (!(await name.isVisible())) await block.getByRole("button", { name: "Add a row" }).click();
   await name.fill(given.compound);
-  await block.getByRole("option", { name: new RegExp(given.compound) }).first().click();
+  await block
+    .getByRole("option", { name: new RegExp(given.compound) })
+    .first()
+    .click();
   await block.getByLabel(`Unit, row ${row}`, { exact: true }).selectOption(given.unit);
   const amount = block.getByLabel(`Amount, row ${row}`, { exact: true });
   await amount.fill(given.amount);
@@ -56,7 +63,9 @@ export async function readToTheEnd(page: Page): Promise<void> {
     if (await whole.isVisible()) return;
     // The button goes away by itself once the last part was seen.
     if (await next.isVisible()) await next.click({ timeout: 2_000 }).catch(() => undefined);
-    await page.waitForFunction(() => new Promise((done) => requestAnimationFrame(() => requestAnimationFrame(() => done(true)))));
+    await page.waitForFunction(
+      () => new Promise((done) => requestAnimationFrame(() => requestAnimationFrame(() => done(true)))),
+    );
   }
   await expect(whole).toBeVisible();
 }
@@ -64,7 +73,12 @@ export async function readToTheEnd(page: Page): Promise<void> {
 export async function signAsAuthor(page: Page, label: string, password: string): Promise<void> {
   await page.getByRole("link", { name: "Sign as author" }).click();
   await expect(page).toHaveURL(new RegExp(`/entries/${label}/sign$`));
-  await expect(page.getByRole("button", { name: "Show the next part not seen" }).or(page.getByText("The whole revision has been opened.")).first()).toBeVisible();
+  await expect(
+    page
+      .getByRole("button", { name: "Show the next part not seen" })
+      .or(page.getByText("The whole revision has been opened."))
+      .first(),
+  ).toBeVisible();
   await readToTheEnd(page);
   await page.getByLabel(/^Password/).fill(password);
   await page.getByRole("button", { name: "Sign as author" }).click();

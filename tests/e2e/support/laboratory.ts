@@ -9,7 +9,12 @@ import { fileURLToPath } from "node:url";
 import { z } from "zod";
 
 const root = fileURLToPath(new URL("../../../", import.meta.url));
-const person = z.object({ printedName: z.string(), email: z.string(), password: z.string(), roles: z.array(z.string()) });
+const person = z.object({
+  printedName: z.string(),
+  email: z.string(),
+  password: z.string(),
+  roles: z.array(z.string()),
+});
 export type DemoPerson = z.infer<typeof person>;
 
 export type Laboratory = {
@@ -94,7 +99,9 @@ export function freePort(): Promise<number> {
     probe.once("error", failed);
     probe.listen(0, () => {
       const address = probe.address();
-      probe.close(() => (typeof address === "object" && address !== null ? done(address.port) : failed(new Error("No port."))));
+      probe.close(() =>
+        typeof address === "object" && address !== null ? done(address.port) : failed(new Error("No port.")),
+      );
     });
   });
 }

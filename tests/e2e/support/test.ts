@@ -1,14 +1,17 @@
 // The tests' own `test`: a laboratory for each worker, people who sign in, and nothing that went wrong unseen: a console
 // error, a page error or an unexpected 4xx or 5xx fails the test.
 import AxeBuilder from "@axe-core/playwright";
-import { test as base, type Browser, type BrowserContext, expect, type Page } from "@playwright/test";
+import { type Browser, type BrowserContext, test as base, expect, type Page } from "@playwright/test";
 import { type Laboratory, openLaboratory } from "./laboratory.ts";
 
 export type Someone = { page: Page; context: BrowserContext };
 
 type Fixtures = {
   /** Opens a browser of their own for a person of the demo laboratory and signs them in. */
-  as: (printedName: string, options?: { colorScheme?: "light" | "dark"; viewport?: { width: number; height: number } }) => Promise<Someone>;
+  as: (
+    printedName: string,
+    options?: { colorScheme?: "light" | "dark"; viewport?: { width: number; height: number } },
+  ) => Promise<Someone>;
   /** Says before an act which answers of the server it expects beside the good ones, e.g. 409. */
   expectAnswers: (...statuses: number[]) => void;
   watch: Watch;
@@ -94,8 +97,16 @@ export async function signIn(page: Page, laboratory: Laboratory, printedName: st
 
 /** No finding by axe on what is shown now (WCAG 2.2 A and AA). */
 export async function expectAccessible(page: Page): Promise<void> {
-  const { violations } = await new AxeBuilder({ page }).withTags(["wcag2a", "wcag2aa", "wcag21a", "wcag21aa", "wcag22aa", "best-practice"]).analyze();
-  expect(violations.map(({ id, help, nodes }) => ({ id, help, where: nodes.slice(0, 3).map((node) => node.html.slice(0, 160)) }))).toEqual([]);
+  const { violations } = await new AxeBuilder({ page })
+    .withTags(["wcag2a", "wcag2aa", "wcag21a", "wcag21aa", "wcag22aa", "best-practice"])
+    .analyze();
+  expect(
+    violations.map(({ id, help, nodes }) => ({
+      id,
+      help,
+      where: nodes.slice(0, 3).map((node) => node.html.slice(0, 160)),
+    })),
+  ).toEqual([]);
 }
 
 export { expect };

@@ -10,7 +10,10 @@ import { type Answered, showProblem } from "../../../_components/answered.ts";
 import { forgottenInput } from "../schema.ts";
 
 export function ForgottenForm({ ask }: { ask: (raw: unknown) => Promise<Answered<unknown>> }) {
-  const form = useForm<z.infer<typeof forgottenInput>>({ resolver: zodResolver(forgottenInput), defaultValues: { email: "" } });
+  const form = useForm<z.infer<typeof forgottenInput>>({
+    resolver: zodResolver(forgottenInput),
+    defaultValues: { email: "" },
+  });
   const { errors, isSubmitting, isSubmitSuccessful } = form.formState;
   const submit = form.handleSubmit(async (values) => {
     const answered = await ask(values);
@@ -30,7 +33,13 @@ export function ForgottenForm({ ask }: { ask: (raw: unknown) => Promise<Answered
           {errors.root.message}
         </Says>
       ) : null}
-      <TextField label="E-mail" type="email" autoComplete="username" error={errors.email?.message} {...form.register("email")} />
+      <TextField
+        label="E-mail"
+        type="email"
+        autoComplete="username"
+        error={errors.email?.message}
+        {...form.register("email")}
+      />
       <Button type="submit" kind="first" pending={isSubmitting} pendingWords="Sending">
         Send the link
       </Button>

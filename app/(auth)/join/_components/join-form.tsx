@@ -14,7 +14,9 @@ export function JoinForm({ code, known, join }: Props) {
       known={known}
       asksIdentity={known === null}
       words="Take this password and sign in"
-      send={({ password, printedName, email }) => join(known === null ? { code, password, printedName, email } : { code, password })}
+      send={({ password, printedName, email }) =>
+        join(known === null ? { code, password, printedName, email } : { code, password })
+      }
       then="/desk"
     />
   );

@@ -16,6 +16,8 @@ export function ResetForm({ token, set }: { token: string; set: (raw: unknown) =
 
 /** The server calls the field newPassword, this form password. */
 function atPassword(answered: Answered<unknown>): Answered<unknown> {
-  const sentence = answered.ok ? undefined : answered.problem.fields?.["newPassword"];
-  return answered.ok || sentence === undefined ? answered : { ok: false, problem: { ...answered.problem, fields: { password: sentence } } };
+  const sentence = answered.ok ? undefined : answered.problem.fields?.newPassword;
+  return answered.ok || sentence === undefined
+    ? answered
+    : { ok: false, problem: { ...answered.problem, fields: { password: sentence } } };
 }

@@ -12,7 +12,12 @@ export function DemoDoor({ people, next, enter }: Props) {
   return (
     <>
       {/* A new key makes a new form with the person's values in it. */}
-      <SignInForm key={filled?.email ?? ""} filled={filled} enter={enter} onEntered={() => window.location.assign(next)} />
+      <SignInForm
+        key={filled?.email ?? ""}
+        filled={filled}
+        enter={enter}
+        onEntered={() => window.location.assign(next)}
+      />
       {people.length === 0 ? null : (
         <section className="demo-people" aria-labelledby="demo-people">
           <h2 id="demo-people" className="lab">
@@ -22,7 +27,11 @@ export function DemoDoor({ people, next, enter }: Props) {
           <ul>
             {people.map((person) => (
               <li key={person.email}>
-                <button type="button" className="quiet" onClick={() => setFilled({ email: person.email, password: person.password })}>
+                <button
+                  type="button"
+                  className="quiet"
+                  onClick={() => setFilled({ email: person.email, password: person.password })}
+                >
                   {person.printedName}
                 </button>{" "}
                 <span className="faint">{person.about}</span>

@@ -25,7 +25,13 @@ export function PasswordForm({ save }: { save: (raw: unknown) => Promise<Answere
           {errors.root.message}
         </Says>
       ) : null}
-      <TextField label="Password now" type="password" autoComplete="current-password" error={errors.currentPassword?.message} {...form.register("currentPassword")} />
+      <TextField
+        label="Password now"
+        type="password"
+        autoComplete="current-password"
+        error={errors.currentPassword?.message}
+        {...form.register("currentPassword")}
+      />
       <TextField
         label="New password"
         type="password"
@@ -34,7 +40,13 @@ export function PasswordForm({ save }: { save: (raw: unknown) => Promise<Answere
         error={errors.newPassword?.message}
         {...form.register("newPassword")}
       />
-      <TextField label="The same again" type="password" autoComplete="new-password" error={errors.again?.message} {...form.register("again")} />
+      <TextField
+        label="The same again"
+        type="password"
+        autoComplete="new-password"
+        error={errors.again?.message}
+        {...form.register("again")}
+      />
       <Button type="submit" pending={isSubmitting} pendingWords="Changing it">
         Change the password
       </Button>

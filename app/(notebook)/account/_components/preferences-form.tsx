@@ -49,13 +49,20 @@ export function PreferencesForm({ decimalSign, timeZone, zones, save }: Props) {
         control={form.control}
         name="timeZone"
         render={({ field }) => (
-          <SelectField label="Time zone" choices={zones.map((zone) => ({ value: zone, label: zone }))} error={errors.timeZone?.message} {...field} />
+          <SelectField
+            label="Time zone"
+            choices={zones.map((zone) => ({ value: zone, label: zone }))}
+            error={errors.timeZone?.message}
+            {...field}
+          />
         )}
       />
       <Button type="submit" pending={isSubmitting} pendingWords="Keeping them">
         Keep these
       </Button>
-      {isSubmitSuccessful && !isDirty && Object.keys(errors).length === 0 ? <Says kind="good" finding="Kept." urgent /> : null}
+      {isSubmitSuccessful && !isDirty && Object.keys(errors).length === 0 ? (
+        <Says kind="good" finding="Kept." urgent />
+      ) : null}
     </form>
   );
 }

@@ -1,14 +1,14 @@
 import type { Metadata } from "next";
 import Link from "next/link";
 import { z } from "zod";
-import { type EventFilters, listEvents } from "../../../../db/audit.ts";
-import { listPeople } from "../../../../db/people.ts";
-import { EVENT_ACTIONS } from "../../../../db/sentences.ts";
-import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { formatDateTime } from "../../../../components/format.ts";
+import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../../components/ui/plain-table.tsx";
+import { type EventFilters, listEvents } from "../../../../db/audit.ts";
+import { listPeople } from "../../../../db/people.ts";
+import { EVENT_ACTIONS } from "../../../../db/sentences.ts";
 import { settings } from "../../../_server/env.ts";
 import { readForPage } from "../../../_server/page-read.ts";
 import { Parts } from "../_components/parts.tsx";
@@ -45,7 +45,11 @@ export default async function AuditPage({ searchParams }: Props) {
         Audit trail
       </LeafTitle>
       <Parts isDemo={settings().demo} />
-      <AuditForm asked={address} people={read.people.map(({ id, printedName }) => ({ id, name: printedName }))} actions={EVENT_ACTIONS} />
+      <AuditForm
+        asked={address}
+        people={read.people.map(({ id, printedName }) => ({ id, name: printedName }))}
+        actions={EVENT_ACTIONS}
+      />
       {events.length === 0 ? (
         <EmptyState finding="No event fits.">Take a filter away.</EmptyState>
       ) : (
@@ -57,12 +61,18 @@ export default async function AuditPage({ searchParams }: Props) {
             { id: "at", head: "Server time" },
             { id: "what", head: "What happened", names: true },
           ]}
-          rows={events.map(({ seq, at, sentence }) => ({ key: String(seq), cells: [String(seq), formatDateTime(at, "UTC", { seconds: true }), sentence] }))}
+          rows={events.map(({ seq, at, sentence }) => ({
+            key: String(seq),
+            cells: [String(seq), formatDateTime(at, "UTC", { seconds: true }), sentence],
+          }))}
         />
       )}
       {next === null ? null : (
         <p>
-          <Link className={buttonClass("plain")} href={`/administration/audit?${new URLSearchParams({ ...address, after: String(next) })}`}>
+          <Link
+            className={buttonClass("plain")}
+            href={`/administration/audit?${new URLSearchParams({ ...address, after: String(next) })}`}
+          >
             Show earlier events
           </Link>
         </p>

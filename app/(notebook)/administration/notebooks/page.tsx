@@ -1,10 +1,10 @@
 import type { Metadata } from "next";
-import { listAllNotebooks } from "../../../../db/notebooks.ts";
-import { listPeople } from "../../../../db/people.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { SideRow } from "../../../../components/leaf/side-row.tsx";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
+import { listAllNotebooks } from "../../../../db/notebooks.ts";
+import { listPeople } from "../../../../db/people.ts";
 import { settings } from "../../../_server/env.ts";
 import { readForPage } from "../../../_server/page-read.ts";
 import { Parts } from "../_components/parts.tsx";
@@ -29,9 +29,13 @@ export default async function AdministeredNotebooksPage() {
         </Counterfoil>
       }
     >
-      <LeafTitle under="Who is a member reads the notebook, and does there what their roles allow. Administration opens no entry.">Notebooks and members</LeafTitle>
+      <LeafTitle under="Who is a member reads the notebook, and does there what their roles allow. Administration opens no entry.">
+        Notebooks and members
+      </LeafTitle>
       <Parts isDemo={settings().demo} />
-      {read.notebooks.length === 0 ? <EmptyState finding="There is no notebook yet.">Make the first one at the right.</EmptyState> : null}
+      {read.notebooks.length === 0 ? (
+        <EmptyState finding="There is no notebook yet.">Make the first one at the right.</EmptyState>
+      ) : null}
       {read.notebooks.map(({ id, code, title, about, entries, members }) => (
         <SideRow key={id} label={code} note={`${entries} ${entries === 1 ? "entry" : "entries"}`} level={2}>
           <p>

@@ -1,12 +1,12 @@
 import type { Metadata } from "next";
 import Link from "next/link";
 import { notFound } from "next/navigation";
-import { listOutbox } from "../../../../db/mail.ts";
+import { formatDateTime } from "../../../../components/format.ts";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { SideRow } from "../../../../components/leaf/side-row.tsx";
-import { formatDateTime } from "../../../../components/format.ts";
 import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
+import { listOutbox } from "../../../../db/mail.ts";
 import { settings } from "../../../_server/env.ts";
 import { readForPage } from "../../../_server/page-read.ts";
 import { Parts } from "../_components/parts.tsx";
@@ -17,12 +17,18 @@ export const metadata: Metadata = { title: "Mail sent" };
 export default async function OutboxPage({ searchParams }: { searchParams: Promise<{ after?: string | string[] }> }) {
   if (!settings().demo) notFound();
   const { after } = await searchParams;
-  const { actor, read } = await readForPage((person, db) => listOutbox(db, person, typeof after === "string" ? { after } : {}));
+  const { actor, read } = await readForPage((person, db) =>
+    listOutbox(db, person, typeof after === "string" ? { after } : {}),
+  );
   return (
     <Leaf className="wide">
       <LeafTitle under="The demo posts nothing: what would have been mailed stands here.">Mail sent</LeafTitle>
       <Parts isDemo />
-      {read.mails.length === 0 ? <EmptyState finding="No mail yet.">Invitations, forgotten passwords, signatures and returns bring some.</EmptyState> : null}
+      {read.mails.length === 0 ? (
+        <EmptyState finding="No mail yet.">
+          Invitations, forgotten passwords, signatures and returns bring some.
+        </EmptyState>
+      ) : null}
       {read.mails.map(({ id, to, subject, text, createdAt }) => (
         <SideRow key={id} label={to} note={formatDateTime(createdAt, actor.timeZone)} level={2}>
           <p>

@@ -23,4 +23,3 @@ export async function closeAccount(raw: unknown) {
 export async function startReset(raw: unknown) {
   return answer(overPerson, raw, (actor, input, db) => beginResetFor(db, actor, input));
 }
-

@@ -1,16 +1,16 @@
 import type { Metadata } from "next";
-import { listPeople, type PersonLine } from "../../../../db/people.ts";
-import { ROLES } from "../../../../db/policy.ts";
+import { formatDate } from "../../../../components/format.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
-import { formatDate } from "../../../../components/format.ts";
 import { PlainTable } from "../../../../components/ui/plain-table.tsx";
+import { listPeople, type PersonLine } from "../../../../db/people.ts";
+import { ROLES } from "../../../../db/policy.ts";
 import { settings } from "../../../_server/env.ts";
 import { readForPage } from "../../../_server/page-read.ts";
+import { confirmPerson } from "../../actions.ts";
 import { Parts } from "../_components/parts.tsx";
 import { InviteForm } from "./_components/invite-form.tsx";
 import { PersonActs, RoleTicks } from "./_components/person-acts.tsx";
-import { confirmPerson } from "../../actions.ts";
 import { closeAccount, giveRole, invitePerson, startReset, takeRole } from "./actions.ts";
 
 export const metadata: Metadata = { title: "People and roles" };
@@ -21,7 +21,14 @@ export default async function PeoplePage() {
   return (
     <Leaf
       counterfoil={
-        <Counterfoil head={<StubHead number={String(there.length)} of={there.length === 1 ? "person has an account" : "people have an account"} />}>
+        <Counterfoil
+          head={
+            <StubHead
+              number={String(there.length)}
+              of={there.length === 1 ? "person has an account" : "people have an account"}
+            />
+          }
+        >
           <StubSection title="Invite somebody">
             <InviteForm invite={invitePerson} />
           </StubSection>
@@ -42,7 +49,11 @@ export default async function PeoplePage() {
           { id: "notebooks", head: "Notebooks", kind: "mono" },
           { id: "acts", head: "Account" },
         ]}
-        rows={people.map((person) => ({ key: person.id, className: person.closedAt ? "faint" : undefined, cells: cellsOf(person, person.id === actor.id) }))}
+        rows={people.map((person) => ({
+          key: person.id,
+          className: person.closedAt ? "faint" : undefined,
+          cells: cellsOf(person, person.id === actor.id),
+        }))}
       />
     </Leaf>
   );
@@ -54,7 +65,19 @@ function cellsOf(person: PersonLine, isSelf: boolean) {
   return [
     printedName,
     email,
-    isFixed ? roles.join(", ") || "none" : <RoleTicks key="roles" personId={id} name={printedName} held={roles} roles={ROLES} give={giveRole} take={takeRole} />,
+    isFixed ? (
+      roles.join(", ") || "none"
+    ) : (
+      <RoleTicks
+        key="roles"
+        personId={id}
+        name={printedName}
+        held={roles}
+        roles={ROLES}
+        give={giveRole}
+        take={takeRole}
+      />
+    ),
     notebooks.join(" "),
     closedAt !== null ? (
       `closed ${formatDate(closedAt)}`

@@ -7,7 +7,11 @@ const reason = z.string().trim().min(3).max(500);
 const personId = z.string().min(1).max(64);
 
 export const invitation = z.strictObject({
-  printedName: z.string().trim().min(2, { error: "Write the name that they sign with." }).max(80, { error: "At most 80 characters." }),
+  printedName: z
+    .string()
+    .trim()
+    .min(2, { error: "Write the name that they sign with." })
+    .max(80, { error: "At most 80 characters." }),
   email: z.email({ error: "Write an e-mail address." }).max(254),
   roles: z.array(z.enum(ROLE_NAMES)).max(ROLE_NAMES.length),
 });

@@ -13,7 +13,10 @@ export function ConfirmPerson({ personId, name, confirm }: Props) {
       label="How do you know?"
       act={(how) => confirm({ personId, how })}
     >
-      <p>Confirm only after you have seen or spoken to the person. Until then nothing can be signed with the new password.</p>
+      <p>
+        Confirm only after you have seen or spoken to the person. Until then nothing can be signed with the new
+        password.
+      </p>
     </ReasonedAct>
   );
 }

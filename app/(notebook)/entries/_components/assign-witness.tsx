@@ -28,7 +28,10 @@ export function AssignWitness({ entryId, now, witnesses, assign }: Props) {
     <>
       <SelectField
         label="Witness"
-        choices={[{ value: ANY, label: "any witness of the notebook" }, ...witnesses.map(({ id, printedName }) => ({ value: id, label: printedName }))]}
+        choices={[
+          { value: ANY, label: "any witness of the notebook" },
+          ...witnesses.map(({ id, printedName }) => ({ value: id, label: printedName })),
+        ]}
         value={now ?? ANY}
         onChange={choose}
       />

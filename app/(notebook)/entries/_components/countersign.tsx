@@ -6,10 +6,10 @@ import { useRouter } from "next/navigation";
 import { type ReactNode, useState } from "react";
 import { useForm } from "react-hook-form";
 import { z } from "zod";
+import { fixed, formatDateTime } from "../../../../components/format.ts";
 import { StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { Fingerprint } from "../../../../components/leaf/fingerprint.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
-import { fixed, formatDateTime } from "../../../../components/format.ts";
 import { Button } from "../../../../components/ui/button.tsx";
 import { Dialog } from "../../../../components/ui/dialog.tsx";
 import { FieldError } from "../../../../components/ui/field-parts.tsx";
@@ -86,7 +86,9 @@ function Check({ revisionId, check, counts, decimalSign, finding, onFinding }: C
     <StubSection title="Checked by the server">
       {finding === null ? (
         <>
-          <p className="note">The server solves every calculation again from what was signed, and hashes every file again.</p>
+          <p className="note">
+            The server solves every calculation again from what was signed, and hashes every file again.
+          </p>
           {pending ? <Progress label={`Checking ${what}`} /> : null}
           <Button pending={pending} onClick={run}>
             Check {what}
@@ -131,12 +133,18 @@ function Found({ finding, decimalSign }: { finding: ShownFinding; decimalSign: "
               </tr>
             </tbody>
           </table>
-          {block.keyFits ? null : <FieldError>The kept key does not belong to the kept inputs. Tell an administrator.</FieldError>}
+          {block.keyFits ? null : (
+            <FieldError>The kept key does not belong to the kept inputs. Tell an administrator.</FieldError>
+          )}
           {block.constants.same ? (
             <p className="note">Today’s constants are those that were used.</p>
           ) : (
             <p className="note">
-              Today’s constants differ: {block.constants.changed.map(({ pinned, pinnedPKa, now, nowPKa }) => `${pinned} ${pinnedPKa}, now ${now} ${nowPKa}`).join("; ")}.
+              Today’s constants differ:{" "}
+              {block.constants.changed
+                .map(({ pinned, pinnedPKa, now, nowPKa }) => `${pinned} ${pinnedPKa}, now ${now} ${nowPKa}`)
+                .join("; ")}
+              .
             </p>
           )}
         </div>
@@ -146,34 +154,61 @@ function Found({ finding, decimalSign }: { finding: ShownFinding; decimalSign: "
           <p>
             <b>{file.name}</b>
             <br />
-            {file.fits ? <StateMark state="reproduces">Fits its SHA-256</StateMark> : <StateMark state="differs">Does not fit its SHA-256</StateMark>}
+            {file.fits ? (
+              <StateMark state="reproduces">Fits its SHA-256</StateMark>
+            ) : (
+              <StateMark state="differs">Does not fit its SHA-256</StateMark>
+            )}
           </p>
           <Fingerprint hex={file.found ?? file.sha256} label={`SHA-256 of ${file.name} now`} short />
         </div>
       ))}
-      {finding.blocks.length + finding.files.length === 0 ? <p className="note">There is no calculation and no file on the page.</p> : null}
+      {finding.blocks.length + finding.files.length === 0 ? (
+        <p className="note">There is no calculation and no file on the page.</p>
+      ) : null}
       <p className="note">
-        Checked {formatDateTime(finding.at)}. “Reproduces” says that engine {finding.engine} gave the same value, no more.
+        Checked {formatDateTime(finding.at)}. “Reproduces” says that engine {finding.engine} gave the same value, no
+        more.
       </p>
     </>
   );
 }
 
-function CountersignForm({ label, revisionId, hash, meaning, signer, countersign, finding }: Props & { finding: ShownFinding }) {
+function CountersignForm({
+  label,
+  revisionId,
+  hash,
+  meaning,
+  signer,
+  countersign,
+  finding,
+}: Props & { finding: ShownFinding }) {
   const router = useRouter();
   const differs = finding.differing.blocks.length > 0;
   const shape = z.object({
-    acknowledgement: differs ? z.string().trim().min(3, { error: "Write what you make of the difference." }).max(1000) : z.string().max(1000),
+    acknowledgement: differs
+      ? z.string().trim().min(3, { error: "Write what you make of the difference." }).max(1000)
+      : z.string().max(1000),
     password: z.string().min(1, { error: "Write your password." }).max(256),
   });
-  const form = useForm<z.infer<typeof shape>>({ resolver: zodResolver(shape), defaultValues: { acknowledgement: "", password: "" } });
+  const form = useForm<z.infer<typeof shape>>({
+    resolver: zodResolver(shape),
+    defaultValues: { acknowledgement: "", password: "" },
+  });
   const { errors, isSubmitting, isSubmitSuccessful } = form.formState;
   const submit = form.handleSubmit(async ({ acknowledgement, password }) => {
-    const answered = await countersign({ revisionId, shownHash: hash, findingId: finding.id, acknowledgement, password });
+    const answered = await countersign({
+      revisionId,
+      shownHash: hash,
+      findingId: finding.id,
+      acknowledgement,
+      password,
+    });
     if (answered.ok) return router.push(`/entries/${label}`);
     const { problem } = answered;
     form.resetField("password", { defaultValue: "" });
-    if (problem.code === "signing.wrong-password") form.setError("password", { message: `${problem.title}. ${problem.detail ?? ""}` }, { shouldFocus: true });
+    if (problem.code === "signing.wrong-password")
+      form.setError("password", { message: `${problem.title}. ${problem.detail ?? ""}` }, { shouldFocus: true });
     else showProblem(form, problem, ["acknowledgement", "password"]);
   });
   if (finding.differing.files.length > 0) {
@@ -211,8 +246,20 @@ function CountersignForm({ label, revisionId, hash, meaning, signer, countersign
           <br />
           <span className="faint">{signer.email}</span>
         </p>
-        <TextField label="Password" aside={`of ${signer.name}`} type="password" autoComplete="current-password" error={errors.password?.message} {...form.register("password")} />
-        <Button type="submit" kind="first" pending={isSubmitting || (isSubmitSuccessful && Object.keys(errors).length === 0)} pendingWords="Countersigning">
+        <TextField
+          label="Password"
+          aside={`of ${signer.name}`}
+          type="password"
+          autoComplete="current-password"
+          error={errors.password?.message}
+          {...form.register("password")}
+        />
+        <Button
+          type="submit"
+          kind="first"
+          pending={isSubmitting || (isSubmitSuccessful && Object.keys(errors).length === 0)}
+          pendingWords="Countersigning"
+        >
           Countersign
         </Button>
       </form>
@@ -221,7 +268,11 @@ function CountersignForm({ label, revisionId, hash, meaning, signer, countersign
 }
 
 const reasoned = z.object({
-  reason: z.string().trim().min(3, { error: "Write why, so that the author knows what to do." }).max(1000, { error: "At most 1000 characters." }),
+  reason: z
+    .string()
+    .trim()
+    .min(3, { error: "Write why, so that the author knows what to do." })
+    .max(1000, { error: "At most 1000 characters." }),
 });
 
 type ReturnProps = { label: string; revisionId: string; author: string; giveBack: Act };
@@ -258,13 +309,22 @@ function ReturnToAuthor({ label, revisionId, author, giveBack }: ReturnProps) {
           </>
         }
       >
-        <p>This revision and its signature stay readable. A new revision begins as a draft with the same content and no signature.</p>
+        <p>
+          This revision and its signature stay readable. A new revision begins as a draft with the same content and no
+          signature.
+        </p>
         {errors.root ? (
           <Says kind="stop" urgent>
             {errors.root.message}
           </Says>
         ) : null}
-        <TextArea label="Reason" hint="You may name a place, such as ¶ 4 or E2." rows={3} error={errors.reason?.message} {...form.register("reason")} />
+        <TextArea
+          label="Reason"
+          hint="You may name a place, such as ¶ 4 or E2."
+          rows={3}
+          error={errors.reason?.message}
+          {...form.register("reason")}
+        />
       </Dialog>
     </>
   );

@@ -30,9 +30,29 @@ type Props = {
   enter: (raw: unknown) => Promise<Answered<unknown>>;
 };
 
-const MARKS: Record<SaveStatus["kind"], StateName> = { saved: "saved", saving: "saving", offline: "offline", refused: "offline", "signed-out": "offline" };
+const MARKS: Record<SaveStatus["kind"], StateName> = {
+  saved: "saved",
+  saving: "saving",
+  offline: "offline",
+  refused: "offline",
+  "signed-out": "offline",
+};
 
-export function DraftLeaf({ label, of, revisionId, person, decimalSign, timeZone, sessionKey, recordedAt, maySign, whyNot, notice, sections, enter }: Props) {
+export function DraftLeaf({
+  label,
+  of,
+  revisionId,
+  person,
+  decimalSign,
+  timeZone,
+  sessionKey,
+  recordedAt,
+  maySign,
+  whyNot,
+  notice,
+  sections,
+  enter,
+}: Props) {
   const [status, setStatus] = useState<SaveStatus>(SAVED);
   const [state, setState] = useState<string>("draft");
   const isSettled = status.kind === "saved" && status.unsavedFields === 0;

@@ -81,7 +81,10 @@ export function ReadingProgress({ reading, children }: { reading: Reading; child
 function sectionsOf(root: HTMLElement | null): HTMLElement[] {
   let holder: Element | null = root;
   while (holder !== null && holder.children.length === 1) holder = holder.children[0] ?? null;
-  const found = holder === null ? [] : [...holder.children].flatMap((child) => (child.children.length > 12 ? [...child.children] : [child]));
+  const found =
+    holder === null
+      ? []
+      : [...holder.children].flatMap((child) => (child.children.length > 12 ? [...child.children] : [child]));
   return found.filter((each): each is HTMLElement => each instanceof HTMLElement && each.offsetHeight > 0);
 }
 

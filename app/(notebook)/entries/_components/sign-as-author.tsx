@@ -12,8 +12,8 @@ import { Button } from "../../../../components/ui/button.tsx";
 import { Says } from "../../../../components/ui/says.tsx";
 import { TextField } from "../../../../components/ui/text-field.tsx";
 import { showProblem } from "../../../_components/answered.ts";
-import { SigningLeaf } from "./signing-leaf.tsx";
 import { Changes, changesOf } from "./changes.tsx";
+import { SigningLeaf } from "./signing-leaf.tsx";
 import type { Act } from "./vouching.ts";
 
 type Props = {
@@ -34,7 +34,20 @@ type Props = {
 
 const form = z.object({ password: z.string().min(1, { error: "Write your password." }).max(256) });
 
-export function SignAsAuthor({ label, of, revisionId, hash, meaning, signer, hindrances, open, readToTheEnd, sign, page, sections }: Props) {
+export function SignAsAuthor({
+  label,
+  of,
+  revisionId,
+  hash,
+  meaning,
+  signer,
+  hindrances,
+  open,
+  readToTheEnd,
+  sign,
+  page,
+  sections,
+}: Props) {
   return (
     <SigningLeaf
       label={label}
@@ -69,23 +82,33 @@ type FormProps = Pick<Props, "label" | "revisionId" | "hash" | "meaning" | "sign
 
 function SignForm({ label, revisionId, hash, meaning, signer, sign }: FormProps) {
   const router = useRouter();
-  const { register, handleSubmit, formState, ...rest } = useForm<z.infer<typeof form> & { changed?: Problem }>({ resolver: zodResolver(form), defaultValues: { password: "" } });
+  const { register, handleSubmit, formState, ...rest } = useForm<z.infer<typeof form> & { changed?: Problem }>({
+    resolver: zodResolver(form),
+    defaultValues: { password: "" },
+  });
   const { errors, isSubmitting, isSubmitSuccessful } = formState;
-  const changed = changesOf(errors.root?.["changed"]?.message);
+  const changed = changesOf(errors.root?.changed?.message);
   const submit = handleSubmit(async ({ password }) => {
     const answered = await sign({ revisionId, shownHash: hash, password });
     if (answered.ok) return router.push(`/entries/${label}`);
     const { problem } = answered;
     rest.resetField("password", { defaultValue: "" });
-    if (problem.code === "revision.changed") rest.setError("root.changed", { message: JSON.stringify(problem.values ?? {}) });
-    else if (problem.code === "signing.wrong-password") rest.setError("password", { message: `${problem.title}. ${problem.detail ?? ""}` }, { shouldFocus: true });
+    if (problem.code === "revision.changed")
+      rest.setError("root.changed", { message: JSON.stringify(problem.values ?? {}) });
+    else if (problem.code === "signing.wrong-password")
+      rest.setError("password", { message: `${problem.title}. ${problem.detail ?? ""}` }, { shouldFocus: true });
     else showProblem({ register, handleSubmit, formState, ...rest }, problem, ["password"]);
   });
   return (
     <StubSection title="Your signature">
       <form className="sign" onSubmit={submit} noValidate>
         {changed === null ? null : (
-          <Says kind="stop" finding="The page changed while you were reading it. Nothing was signed." urgent actions={<Button onClick={() => window.location.reload()}>Read it as it is now</Button>}>
+          <Says
+            kind="stop"
+            finding="The page changed while you were reading it. Nothing was signed."
+            urgent
+            actions={<Button onClick={() => window.location.reload()}>Read it as it is now</Button>}
+          >
             <Changes changes={changed} />
           </Says>
         )}
@@ -104,8 +127,20 @@ function SignForm({ label, revisionId, hash, meaning, signer, sign }: FormProps)
           <br />
           <span className="faint">{signer.email}</span>
         </p>
-        <TextField label="Password" aside={`of ${signer.name}`} type="password" autoComplete="current-password" error={errors.password?.message} {...register("password")} />
-        <Button type="submit" kind="first" pending={isSubmitting || (isSubmitSuccessful && Object.keys(errors).length === 0)} pendingWords="Signing">
+        <TextField
+          label="Password"
+          aside={`of ${signer.name}`}
+          type="password"
+          autoComplete="current-password"
+          error={errors.password?.message}
+          {...register("password")}
+        />
+        <Button
+          type="submit"
+          kind="first"
+          pending={isSubmitting || (isSubmitSuccessful && Object.keys(errors).length === 0)}
+          pendingWords="Signing"
+        >
           Sign as author
         </Button>
         <p className="note">After that nobody can type in this revision any more.</p>

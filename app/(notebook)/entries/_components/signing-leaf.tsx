@@ -28,7 +28,19 @@ type Props = {
   children: (isWhole: boolean) => ReactNode;
 };
 
-export function SigningLeaf({ label, of, state, revisionId, hash, hashTitle, open, readToTheEnd, page, sections, children }: Props) {
+export function SigningLeaf({
+  label,
+  of,
+  state,
+  revisionId,
+  hash,
+  hashTitle,
+  open,
+  readToTheEnd,
+  page,
+  sections,
+  children,
+}: Props) {
   const router = useRouter();
   const { root, reading } = useReading(false);
   const [opened, setOpened] = useState(false);

@@ -1,23 +1,23 @@
 // An entry as a leaf: the editor for whoever writes on its draft, the frozen page for everybody else and every other state.
 import Link from "next/link";
 import type { ReactNode } from "react";
-import { type EntryRead, readEntry } from "../../../../db/entries.ts";
-import type { Actor } from "../../../../db/policy.ts";
-import { eligibleWitnesses } from "../../../../db/eligible-witnesses.ts";
-import { StaticPage } from "../../../../editor/read/static-page.tsx";
+import { formatDateTime, relativeDay } from "../../../../components/format.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { Leaf } from "../../../../components/leaf/leaf.tsx";
 import { PrintStub, PrintWatermark } from "../../../../components/leaf/print-stub.tsx";
 import { Seal } from "../../../../components/leaf/seal-print.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
-import { formatDateTime, relativeDay } from "../../../../components/format.ts";
 import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { Notice } from "../../../../components/ui/says.tsx";
-import { enter } from "../../../(auth)/sign-in/actions.ts";
+import { eligibleWitnesses } from "../../../../db/eligible-witnesses.ts";
+import { type EntryRead, readEntry } from "../../../../db/entries.ts";
+import type { Actor } from "../../../../db/policy.ts";
 import { strayUpdates } from "../../../../db/updates.ts";
+import { StaticPage } from "../../../../editor/read/static-page.tsx";
 import { readForPage } from "../../../_server/page-read.ts";
-import { DraftLeaf } from "../_components/draft-leaf.tsx";
+import { enter } from "../../../(auth)/sign-in/actions.ts";
 import { AssignWitness } from "../_components/assign-witness.tsx";
+import { DraftLeaf } from "../_components/draft-leaf.tsx";
 import { assign } from "./actions.ts";
 import { type Frozen, frozenContent, frozenDraft } from "./frozen.ts";
 import { History } from "./history.tsx";
@@ -27,7 +27,11 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
   const { actor, read } = await readForPage(async (person, db) => {
     const entry = await readEntry(db, person, label, revision);
     const writes = entry.may.write;
-    const frozen = writes ? null : entry.signed === null ? await frozenDraft(db, person, entry.revision.id) : await frozenContent(db, entry.signed.content);
+    const frozen = writes
+      ? null
+      : entry.signed === null
+        ? await frozenDraft(db, person, entry.revision.id)
+        : await frozenContent(db, entry.signed.content);
     const witnesses = entry.may.assignWitness ? await eligibleWitnesses(db, person, { entryId: entry.id }) : [];
     return { entry, frozen, db, witnesses, strays: await strayUpdates(db, person, entry.revision.id) };
   });
@@ -36,7 +40,10 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
     <>
       {strays.length === 0 ? null : (
         <StubSection title="Kept for you">
-          <p className="note">You sent this when the revision was no longer a draft. It was not added; it is yours to copy into the next one.</p>
+          <p className="note">
+            You sent this when the revision was no longer a draft. It was not added; it is yours to copy into the next
+            one.
+          </p>
           {strays.map(({ id, at, text }) => (
             <p key={id}>
               “{text}” <span className="faint">{formatDateTime(at, actor.timeZone)}</span>
@@ -141,7 +148,14 @@ function FrozenLeaf({ entry, actor, frozen, sections }: FrozenProps) {
       }
     >
       {noticeOf(entry)}
-      <StaticPage page={frozen.page} head={frozen.head} names={frozen.names} blocks={frozen.blocks} attachments={frozen.attachments} decimalSign={actor.decimalSign} />
+      <StaticPage
+        page={frozen.page}
+        head={frozen.head}
+        names={frozen.names}
+        blocks={frozen.blocks}
+        attachments={frozen.attachments}
+        decimalSign={actor.decimalSign}
+      />
     </Leaf>
   );
 }

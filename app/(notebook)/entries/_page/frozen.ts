@@ -1,18 +1,25 @@
 // What the static page draws: from signed content its own bytes, from a draft what its blocks are answered now.
 import { type Sweeps, sweepBlock } from "../../../../chem/index.ts";
-import type { Db } from "../../../../db/client.ts";
-import { attachmentsOf, type ContentBlock, type SignedContent } from "../../../../db/content.ts";
-import { compoundItems, namesOf } from "../../../../db/compounds.ts";
 import type { AttachmentMeta } from "../../../../components/query/attachments.ts";
+import type { Db } from "../../../../db/client.ts";
+import { compoundItems, namesOf } from "../../../../db/compounds.ts";
+import { attachmentsOf, type ContentBlock, type SignedContent } from "../../../../db/content.ts";
 import type { Actor } from "../../../../db/policy.ts";
 import { type BlockAnswer, resultFor } from "../../../../db/results.ts";
 import { pageState } from "../../../../db/updates.ts";
+import {
+  derivePage,
+  type EquilibriumBlock,
+  openState,
+  type PageHead,
+  type PageJson,
+} from "../../../../editor/schema/index.ts";
 import { isPicture } from "../../../_server/download.ts";
-import { derivePage, openState, type EquilibriumBlock, type PageHead, type PageJson } from "../../../../editor/schema/index.ts";
 
 export type FrozenBlock = {
   block: EquilibriumBlock;
-  answer: Pick<BlockAnswer, "key" | "engine" | "outcome"> & Pick<ContentBlock, "cautions" | "hazards"> & { sweeps: Sweeps | null };
+  answer: Pick<BlockAnswer, "key" | "engine" | "outcome"> &
+    Pick<ContentBlock, "cautions" | "hazards"> & { sweeps: Sweeps | null };
 };
 export type Frozen = {
   page: PageJson;
@@ -30,7 +37,14 @@ export async function frozenContent(db: Db, content: SignedContent): Promise<Fro
     return [id, { block: inputs, answer: { key, engine, outcome, cautions, hazards, sweeps } }] as const;
   });
   const { document: page, head, attachments: files } = content;
-  return { page, head, files, names: await named(db, content.names), attachments: filesById(files), blocks: Object.fromEntries(blocks) };
+  return {
+    page,
+    head,
+    files,
+    names: await named(db, content.names),
+    attachments: filesById(files),
+    blocks: Object.fromEntries(blocks),
+  };
 }
 
 /** A draft as it stands, for somebody who reads it and does not write: not bound, so reading changes nothing. */
@@ -48,7 +62,14 @@ export async function frozenDraft(db: Db, actor: Actor, revisionId: string): Pro
     blocks.push([block.id, { block, answer: { key, engine, outcome, cautions, hazards, sweeps } }]);
   }
   const { page, head } = bare;
-  return { page, head, files, names: await named(db, names), attachments: filesById(files), blocks: Object.fromEntries(blocks) };
+  return {
+    page,
+    head,
+    files,
+    names: await named(db, names),
+    attachments: filesById(files),
+    blocks: Object.fromEntries(blocks),
+  };
 }
 
 /** The names as they were shown when it was signed; the formula beside them is the library's. */
@@ -61,7 +82,14 @@ function filesById(files: SignedContent["attachments"]): Frozen["attachments"] {
   return Object.fromEntries(
     files.map(({ id, name, size, sha256, sniffedType, struck }) => [
       id,
-      { id, name, size, sha256, isPicture: isPicture({ sniffedType }), ...(struck === null ? {} : { struck: struck.reason }) },
+      {
+        id,
+        name,
+        size,
+        sha256,
+        isPicture: isPicture({ sniffedType }),
+        ...(struck === null ? {} : { struck: struck.reason }),
+      },
     ]),
   );
 }

@@ -1,7 +1,7 @@
-import type { Db } from "../../../../db/client.ts";
-import { listEvents } from "../../../../db/audit.ts";
-import type { Actor } from "../../../../db/policy.ts";
 import { formatDateTime } from "../../../../components/format.ts";
+import { listEvents } from "../../../../db/audit.ts";
+import type { Db } from "../../../../db/client.ts";
+import type { Actor } from "../../../../db/policy.ts";
 
 const SHOWN = 200;
 

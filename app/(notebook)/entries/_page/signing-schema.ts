@@ -16,5 +16,9 @@ export const countersigning = z.strictObject({
 });
 export const returning = z.strictObject({
   revisionId,
-  reason: z.string().trim().min(3, { error: "Write why, so that the author knows what to do." }).max(1000, { error: "At most 1000 characters." }),
+  reason: z
+    .string()
+    .trim()
+    .min(3, { error: "Write why, so that the author knows what to do." })
+    .max(1000, { error: "At most 1000 characters." }),
 });

@@ -1,12 +1,12 @@
 // What the counterfoil of an entry holds in every state: who, when, which files, which revisions, what happened.
 import Link from "next/link";
-import type { EntryRead } from "../../../../db/entries.ts";
-import type { SignedContent } from "../../../../db/content.ts";
-import { Fingerprint } from "../../../../components/leaf/fingerprint.tsx";
+import { formatBytes, formatDate, formatDateTime } from "../../../../components/format.ts";
 import { StubSection } from "../../../../components/leaf/counterfoil.tsx";
+import { Fingerprint } from "../../../../components/leaf/fingerprint.tsx";
 import { Sealed } from "../../../../components/leaf/seal-print.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
-import { formatBytes, formatDate, formatDateTime } from "../../../../components/format.ts";
+import type { SignedContent } from "../../../../db/content.ts";
+import type { EntryRead } from "../../../../db/entries.ts";
 
 type Props = { entry: EntryRead; timeZone: string };
 
@@ -65,14 +65,24 @@ export function SealsSection({ entry, timeZone }: Props) {
     <>
       {entry.signatures.map(({ id, kind, printedName, at, meaning, contentSha256, acknowledgement }) => (
         <StubSection key={id}>
-          <Sealed hash={contentSha256} by={kind} name={printedName} capacity={kind} when={formatDateTime(at, timeZone, { seconds: true })} meaning={meaning} withoutHash>
+          <Sealed
+            hash={contentSha256}
+            by={kind}
+            name={printedName}
+            capacity={kind}
+            when={formatDateTime(at, timeZone, { seconds: true })}
+            meaning={meaning}
+            withoutHash
+          >
             {acknowledgement ? <p className="note">About what differs: “{acknowledgement}”</p> : null}
           </Sealed>
         </StubSection>
       ))}
       <StubSection title="Signed content, SHA-256">
         <Fingerprint hex={first.contentSha256} label="SHA-256 of the signed content" />
-        {entry.signatures.length > 1 ? <p className="note">Two like figures: author and witness signed the same SHA-256.</p> : null}
+        {entry.signatures.length > 1 ? (
+          <p className="note">Two like figures: author and witness signed the same SHA-256.</p>
+        ) : null}
       </StubSection>
     </>
   );
@@ -85,7 +95,11 @@ export function RevisionsSection({ entry, timeZone }: Props) {
       <ul className="plain">
         {entry.revisions.map((line) => (
           <li key={line.id}>
-            {line.id === entry.revision.id ? <b>Revision {line.number}</b> : <Link href={`/entries/${entry.label}/${line.number}`}>Revision {line.number}</Link>}{" "}
+            {line.id === entry.revision.id ? (
+              <b>Revision {line.number}</b>
+            ) : (
+              <Link href={`/entries/${entry.label}/${line.number}`}>Revision {line.number}</Link>
+            )}{" "}
             <StateMark state={line.state} />
             {line.returned === null ? null : (
               <p className="note">

@@ -1,14 +1,14 @@
 import type { Metadata } from "next";
 import Link from "next/link";
 import { notFound } from "next/navigation";
-import { type EntryLine, readNotebook } from "../../../../db/notebooks.ts";
+import { formatCount, formatDate } from "../../../../components/format.ts";
 import { Counterfoil, StubHead, StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { Leaf, LeafTitle } from "../../../../components/leaf/leaf.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
-import { formatCount, formatDate } from "../../../../components/format.ts";
 import { buttonClass } from "../../../../components/ui/button-class.ts";
 import { EmptyState } from "../../../../components/ui/empty-state.tsx";
 import { PlainTable } from "../../../../components/ui/plain-table.tsx";
+import { type EntryLine, readNotebook } from "../../../../db/notebooks.ts";
 import { BeginEntry } from "../../../_components/begin-entry.tsx";
 import { readForPage } from "../../../_server/page-read.ts";
 import { begin } from "../../actions.ts";
@@ -52,7 +52,9 @@ export default async function NotebookPage({ params, searchParams }: Props) {
     >
       <LeafTitle under={notebook.about}>{notebook.title}</LeafTitle>
       {entries.length === 0 ? (
-        <EmptyState finding={after === undefined ? "Nothing is written in this notebook yet." : "There are no older entries."}>
+        <EmptyState
+          finding={after === undefined ? "Nothing is written in this notebook yet." : "There are no older entries."}
+        >
           {mayBegin ? "Begin the first entry at the right." : "Researchers who are members begin entries."}
         </EmptyState>
       ) : (
@@ -90,7 +92,13 @@ function cellsOf(entry: EntryLine, timeZone: string) {
       {entry.title || "Without a title"}
     </Link>,
     entry.author,
-    entry.doneOn === null ? <span key="done" className="faint">not given</span> : formatDate(entry.doneOn),
+    entry.doneOn === null ? (
+      <span key="done" className="faint">
+        not given
+      </span>
+    ) : (
+      formatDate(entry.doneOn)
+    ),
     formatDate(entry.createdAt, timeZone),
     <StateMark key="state" state={entry.state} />,
   ];

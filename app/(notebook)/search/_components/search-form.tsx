@@ -22,16 +22,17 @@ type Props = {
 export function SearchForm({ asked, compound, choices, states, faults }: Props) {
   const [picked, setPicked] = useState(compound);
   const [typed, setTyped] = useState(compound?.name ?? "");
-  const [withForms, setWithForms] = useState((asked["narrow"] ?? "") === "");
-  const [withMentions, setWithMentions] = useState((asked["role"] ?? "") === "");
+  const [withForms, setWithForms] = useState((asked.narrow ?? "") === "");
+  const [withMentions, setWithMentions] = useState((asked.role ?? "") === "");
   const [chosen, setChosen] = useState({
-    notebook: asked["notebook"] ?? "",
-    author: asked["author"] ?? "",
-    state: asked["state"] ?? "",
-    pHOf: asked["pHOf"] ?? "",
-    date: asked["date"] ?? "",
+    notebook: asked.notebook ?? "",
+    author: asked.author ?? "",
+    state: asked.state ?? "",
+    pHOf: asked.pHOf ?? "",
+    date: asked.date ?? "",
   });
-  const choose = (name: keyof typeof chosen) => (value: string) => setChosen((before) => ({ ...before, [name]: value }));
+  const choose = (name: keyof typeof chosen) => (value: string) =>
+    setChosen((before) => ({ ...before, [name]: value }));
   const unresolved = typed.trim() !== "" && picked === null;
   const { data, isFetching } = useQuery(compoundsQuery(picked?.name === typed ? "" : typed));
   return (
@@ -72,7 +73,12 @@ export function SearchForm({ asked, compound, choices, states, faults }: Props) 
             text: item.name,
             columns: [item.name, <FormulaText key="formula" formula={item.formula} />, item.cas ?? ""],
           }))}
-          error={faults["compound"] ?? (data?.casCheck ? `The check digit of ${data.casCheck.given} does not fit; it would be ${data.casCheck.corrected}.` : undefined)}
+          error={
+            faults.compound ??
+            (data?.casCheck
+              ? `The check digit of ${data.casCheck.given} does not fit; it would be ${data.casCheck.corrected}.`
+              : undefined)
+          }
           hint={unresolved ? "Choose one from the list." : undefined}
         />
         <input type="hidden" name="compound" value={picked?.id ?? ""} />
@@ -91,17 +97,23 @@ export function SearchForm({ asked, compound, choices, states, faults }: Props) 
         </CheckField>
       </div>
       <div className="search-more">
-        <TextField label="Words" name="words" defaultValue={asked["words"]} maxLength={400} error={faults["words"]} />
+        <TextField label="Words" name="words" defaultValue={asked.words} maxLength={400} error={faults.words} />
         <SelectField
           label="Notebook"
-          choices={[{ value: "any", label: "all that you may read" }, ...choices.notebooks.map(({ id, code, title }) => ({ value: id, label: `${code} ${title}` }))]}
+          choices={[
+            { value: "any", label: "all that you may read" },
+            ...choices.notebooks.map(({ id, code, title }) => ({ value: id, label: `${code} ${title}` })),
+          ]}
           unchosen="all that you may read"
           value={chosen.notebook}
           onChange={choose("notebook")}
         />
         <SelectField
           label="Author"
-          choices={[{ value: "any", label: "anybody" }, ...choices.authors.map(({ id, name }) => ({ value: id, label: name }))]}
+          choices={[
+            { value: "any", label: "anybody" },
+            ...choices.authors.map(({ id, name }) => ({ value: id, label: name })),
+          ]}
           unchosen="anybody"
           value={chosen.author}
           onChange={choose("author")}
@@ -124,8 +136,8 @@ export function SearchForm({ asked, compound, choices, states, faults }: Props) 
           value={chosen.date}
           onChange={choose("date")}
         />
-        <TextField label="From" name="from" type="date" defaultValue={asked["from"]} error={faults["from"]} />
-        <TextField label="To" name="to" type="date" defaultValue={asked["to"]} error={faults["to"]} />
+        <TextField label="From" name="from" type="date" defaultValue={asked.from} error={faults.from} />
+        <TextField label="To" name="to" type="date" defaultValue={asked.to} error={faults.to} />
         <SelectField
           label="pH"
           choices={[
@@ -136,10 +148,16 @@ export function SearchForm({ asked, compound, choices, states, faults }: Props) 
           unchosen="of no matter"
           value={chosen.pHOf}
           onChange={choose("pHOf")}
-          error={faults["pHOf"]}
+          error={faults.pHOf}
         />
-        <TextField label="from pH" name="pHFrom" inputMode="decimal" defaultValue={asked["pHFrom"]} error={faults["pHFrom"]} />
-        <TextField label="to pH" name="pHTo" inputMode="decimal" defaultValue={asked["pHTo"]} error={faults["pHTo"]} />
+        <TextField
+          label="from pH"
+          name="pHFrom"
+          inputMode="decimal"
+          defaultValue={asked.pHFrom}
+          error={faults.pHFrom}
+        />
+        <TextField label="to pH" name="pHTo" inputMode="decimal" defaultValue={asked.pHTo} error={faults.pHTo} />
       </div>
       {Object.entries(chosen).map(([name, value]) => (
         <input key={name} type="hidden" name={name} value={value === "any" ? "" : value} />

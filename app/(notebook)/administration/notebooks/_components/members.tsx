@@ -7,7 +7,11 @@ import { ReasonedAct } from "../../../../_components/reasoned-act.tsx";
 type Act = (raw: unknown) => Promise<Answered<unknown>>;
 type Notebook = { id: string; title: string };
 
-type MembersProps = { notebook: Notebook; members: { personId: string; printedName: string; roles: string[] }[]; takeOut: Act };
+type MembersProps = {
+  notebook: Notebook;
+  members: { personId: string; printedName: string; roles: string[] }[];
+  takeOut: Act;
+};
 
 export function Members({ notebook, members, takeOut }: MembersProps) {
   if (members.length === 0) return <p className="note">Nobody is a member yet.</p>;

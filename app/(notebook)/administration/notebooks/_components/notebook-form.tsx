@@ -28,9 +28,21 @@ export function NotebookForm({ make }: { make: (raw: unknown) => Promise<Answere
           {errors.root.message}
         </Says>
       ) : null}
-      <TextField label="Code" hint="Stands before each entry's number: DSB-0042." autoComplete="off" error={errors.code?.message} {...form.register("code")} />
+      <TextField
+        label="Code"
+        hint="Stands before each entry's number: DSB-0042."
+        autoComplete="off"
+        error={errors.code?.message}
+        {...form.register("code")}
+      />
       <TextField label="Title" autoComplete="off" error={errors.title?.message} {...form.register("title")} />
-      <TextArea label="What it is for" aside="not required" rows={2} error={errors.about?.message} {...form.register("about")} />
+      <TextArea
+        label="What it is for"
+        aside="not required"
+        rows={2}
+        error={errors.about?.message}
+        {...form.register("about")}
+      />
       <Button type="submit" kind="first" pending={isSubmitting} pendingWords="Making it">
         Make the notebook
       </Button>

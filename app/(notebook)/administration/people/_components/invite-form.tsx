@@ -34,8 +34,19 @@ export function InviteForm({ invite }: { invite: (raw: unknown) => Promise<Answe
           {errors.root.message}
         </Says>
       ) : null}
-      <TextField label="Printed name" autoComplete="off" error={errors.printedName?.message} {...form.register("printedName")} />
-      <TextField label="E-mail" type="email" autoComplete="off" error={errors.email?.message} {...form.register("email")} />
+      <TextField
+        label="Printed name"
+        autoComplete="off"
+        error={errors.printedName?.message}
+        {...form.register("printedName")}
+      />
+      <TextField
+        label="E-mail"
+        type="email"
+        autoComplete="off"
+        error={errors.email?.message}
+        {...form.register("email")}
+      />
       <Controller
         control={form.control}
         name="roles"
@@ -46,7 +57,9 @@ export function InviteForm({ invite }: { invite: (raw: unknown) => Promise<Answe
               <CheckField
                 key={role}
                 checked={field.value.includes(role)}
-                onChange={(ticked) => field.onChange(ticked ? [...field.value, role] : field.value.filter((each) => each !== role))}
+                onChange={(ticked) =>
+                  field.onChange(ticked ? [...field.value, role] : field.value.filter((each) => each !== role))
+                }
               >
                 {role}
               </CheckField>

@@ -29,7 +29,12 @@ export function RoleTicks({ personId, name, held, roles, give, take }: TicksProp
           ) : (
             <>
               <span className="faint">{role}</span>{" "}
-              <ReasonedAct words="give" title={`Make ${name} a ${role}?`} doWords="Give the role" act={(reason) => give({ personId, role, reason })}>
+              <ReasonedAct
+                words="give"
+                title={`Make ${name} a ${role}?`}
+                doWords="Give the role"
+                act={(reason) => give({ personId, role, reason })}
+              >
                 <p>The role qualifies; a notebook is opened to them by making them its member.</p>
               </ReasonedAct>
             </>
@@ -60,8 +65,16 @@ export function PersonActs({ personId, name, held, close, reset, confirm }: Acts
         </li>
       ) : null}
       <li>
-        <ReasonedAct words="Begin a password reset" title={`Begin a password reset for ${name}?`} doWords="Send the link" act={(reason) => reset({ personId, reason })}>
-          <p>A link goes to their e-mail; you do not see it. Their signing is held until a second person has confirmed who they are.</p>
+        <ReasonedAct
+          words="Begin a password reset"
+          title={`Begin a password reset for ${name}?`}
+          doWords="Send the link"
+          act={(reason) => reset({ personId, reason })}
+        >
+          <p>
+            A link goes to their e-mail; you do not see it. Their signing is held until a second person has confirmed
+            who they are.
+          </p>
         </ReasonedAct>
       </li>
       <li>
@@ -73,7 +86,10 @@ export function PersonActs({ personId, name, held, close, reset, confirm }: Acts
           stops
           act={(reason) => close({ personId, reason })}
         >
-          <p>Their sessions end within seconds. Their name stays on what they signed, and the account is never given to anybody else.</p>
+          <p>
+            Their sessions end within seconds. Their name stays on what they signed, and the account is never given to
+            anybody else.
+          </p>
         </ReasonedAct>
       </li>
     </ul>

@@ -1,9 +1,9 @@
 import type { Metadata } from "next";
 import { redirect } from "next/navigation";
+import { Notice } from "../../../../../components/ui/says.tsx";
 import { readEntry } from "../../../../../db/entries.ts";
 import { MEANINGS } from "../../../../../db/manifest.ts";
 import { StaticPage } from "../../../../../editor/read/static-page.tsx";
-import { Notice } from "../../../../../components/ui/says.tsx";
 import { readForPage } from "../../../../_server/page-read.ts";
 import { Countersign } from "../../_components/countersign.tsx";
 import { frozenContent } from "../../_page/frozen.ts";
@@ -45,7 +45,10 @@ export default async function CountersignPage({ params }: Props) {
       giveBack={giveBack}
       page={
         <>
-          <Notice kind="info" finding={`You are reading revision ${entry.revision.number} exactly as ${entry.author.printedName} signed it.`}>
+          <Notice
+            kind="info"
+            finding={`You are reading revision ${entry.revision.number} exactly as ${entry.author.printedName} signed it.`}
+          >
             It cannot be typed in any more.
           </Notice>
           <StaticPage {...frozen} decimalSign={actor.decimalSign} />

@@ -1,10 +1,10 @@
 import type { Metadata } from "next";
 import { redirect } from "next/navigation";
+import { Notice } from "../../../../../components/ui/says.tsx";
 import { readEntry } from "../../../../../db/entries.ts";
 import { MEANINGS } from "../../../../../db/manifest.ts";
 import { contentToSign } from "../../../../../db/signatures.ts";
 import { StaticPage } from "../../../../../editor/read/static-page.tsx";
-import { Notice } from "../../../../../components/ui/says.tsx";
 import { readForPage } from "../../../../_server/page-read.ts";
 import { SignAsAuthor } from "../../_components/sign-as-author.tsx";
 import { frozenContent } from "../../_page/frozen.ts";

@@ -1,0 +1,2 @@
+// vitest's global set-up: runs once, before the first test file.
+export { makeTemplates as setup } from "./database.ts";
