@@ -5,15 +5,15 @@ export default defineConfig({
   testDir: "./tests/e2e",
   outputDir: "./.tmp/e2e",
   timeout: 120_000,
-  expect: { timeout: 15_000 },
+  expect: { timeout: 30_000 },
   workers: 2,
   fullyParallel: false,
   forbidOnly: true,
   retries: 0,
   reporter: [["list"], ["json", { outputFile: ".tmp/playwright.json" }]],
   use: {
-    actionTimeout: 20_000,
-    navigationTimeout: 30_000,
+    actionTimeout: 30_000,
+    navigationTimeout: 45_000,
     viewport: { width: 1440, height: 1000 },
     trace: "retain-on-failure",
     launchOptions: {

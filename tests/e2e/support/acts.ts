@@ -94,3 +94,8 @@ export async function countersign(page: Page, label: string, password: string): 
   await page.getByRole("button", { name: "Countersign" }).click();
   await expect(page).toHaveURL(new RegExp(`/entries/${label}$`));
 }
+
+/** Waits until the counterfoil says that everything typed is committed. */
+export async function saved(page: Page): Promise<void> {
+  await expect(page.getByRole("complementary", { name: "Counterfoil" }).getByText("Saved", { exact: true })).toBeVisible();
+}
