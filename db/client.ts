@@ -113,6 +113,11 @@ async function openServer(url: string): Promise<Database> {
   const pool = new pg.Pool({ connectionString: url, max: 12, options: SESSION, application_name: "counterleaf" });
   // An idle connection that the server closed: the pool makes another when one is asked for.
   pool.on("error", () => {});
+  // One that is cut while a verb holds it: the verb's own statement fails, and that is enough. Without a listener the whole
+  // process would end.
+  pool.on("connect", (client) => {
+    client.on("error", () => {});
+  });
   try {
     (await pool.connect()).release();
   } catch (fault) {

@@ -8,9 +8,14 @@ const launcher = fileURLToPath(new URL("../../app/_server/commands/launch.mjs", 
 
 function launch(mode: string, environment: Record<string, string>): Promise<{ code: number | null; said: string }> {
   return new Promise((done) => {
-    const child = execFile(process.execPath, [launcher, mode], { env: { ...process.env, ...environment } }, (_error, out, err) => {
-      done({ code: child.exitCode, said: (out + err).trim() });
-    });
+    const child = execFile(
+      process.execPath,
+      [launcher, mode],
+      { env: { ...process.env, ...environment } },
+      (_error, out, err) => {
+        done({ code: child.exitCode, said: (out + err).trim() });
+      },
+    );
   });
 }
 
@@ -24,7 +29,9 @@ it("names a port that is taken and what to do, and ends with a code that is not 
   });
   const { code, said } = await launch("demo", { PORT: String(port) });
   server.close();
-  expect(said).toBe(`Port ${port} is taken by another program: stop that one, or choose another with PORT=${port + 1}.`);
+  expect(said).toBe(
+    `Port ${port} is taken by another program: stop that one, or choose another with PORT=${port + 1}.`,
+  );
   expect(code).toBe(1);
 });
 

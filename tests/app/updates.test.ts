@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import * as Y from "yjs";
+import { POST as tell } from "../../app/api/revisions/[id]/presence/route.ts";
 import { GET as stray } from "../../app/api/revisions/[id]/stray/route.ts";
 import { POST as post } from "../../app/api/revisions/[id]/updates/route.ts";
 import { newId } from "../../db/ids.ts";
@@ -86,6 +87,32 @@ describe("posting an update", () => {
       });
     }
     expect(await pageNow()).toBe(before);
+  });
+
+  it("of a page that another person had open is not taken in this one's name (COL-07)", async () => {
+    const bytes = await change("by the one before");
+    const before = await pageNow();
+    const answers = [
+      await send(bytes, { headers: { "x-person": witness.actor.id } }),
+      await ask(stray, `/api/revisions/${revisionId}/stray`, {
+        cookie: author.cookie,
+        headers: { "x-person": witness.actor.id },
+        params: { id: revisionId },
+      }),
+      await ask(tell, `/api/revisions/${revisionId}/presence`, {
+        cookie: author.cookie,
+        headers: { "x-person": witness.actor.id },
+        json: { bytes: "AQEBBG51bGw=" },
+        params: { id: revisionId },
+      }),
+    ];
+    for (const answer of answers) {
+      expect(answer.status).toBe(401);
+      expect(await answer.json()).toMatchObject({ code: "session.ended" });
+    }
+    expect(await pageNow()).toBe(before);
+    expect((await send(bytes, { headers: { "x-person": author.actor.id } })).status).toBe(200);
+    expect(await pageNow()).toContain("by the one before");
   });
 
   it("tells no difference between a hidden page, a missing one and an address that is none (ADM-04)", async () => {

@@ -1,5 +1,14 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from "vitest";
-import { chainFrom, entryChain, listEvents, lockHeads, readHead, record, recordRefusal } from "../../db/audit.ts";
+import {
+  chainFrom,
+  entryChain,
+  listEvents,
+  lockHeads,
+  readHead,
+  record,
+  recordAll,
+  recordRefusal,
+} from "../../db/audit.ts";
 import { verifyChain, verifyEntryChain } from "../../db/chain.ts";
 import { newId } from "../../db/ids.ts";
 import type { Actor } from "../../db/policy.ts";
@@ -53,6 +62,34 @@ describe("an event", () => {
     });
     const heads = await store.db.transaction((tx) => lockHeads(tx, entryId));
     expect(heads).toEqual({ store: { seq: second.seq, hash: second.hash }, entry: { seq: 2, hash: second.entryHash } });
+  });
+
+  it("of many in one stroke is a link of its own, in both chains, in their order (REC-01, REC-04)", async () => {
+    const other = await insertEntry(store, notebookId, researcher.id);
+    const before = await readHead(store.db);
+    // More than go into one statement.
+    const happened = Array.from({ length: 1203 }, (_, place) => ({
+      action: "value.set" as const,
+      ...on(place % 3 === 0 ? other : entryId, { label: "amount", new: String(place) }),
+    }));
+    const recorded = await store.db.transaction(async (tx) => {
+      await record(tx, researcher, "value.set", on(entryId, { new: "first" }));
+      return recordAll(tx, researcher, [
+        ...happened,
+        { action: "demo.seeded", objectKind: "store", objectId: "store" },
+      ]);
+    });
+    expect(recorded.map(({ seq }) => seq)).toEqual(recorded.map((_, index) => before.seq + 2 + index));
+    expect(recorded.at(-1)).toMatchObject({ entrySeq: null, entryHash: null });
+    const own = await entryChain(store.db, entryId);
+    expect(verifyEntryChain(own)).toMatchObject({ ok: true, events: 803 });
+    expect(own[1]?.detail).toBe('{"label":"amount","new":"1"}');
+    expect(verifyEntryChain(await entryChain(store.db, other))).toMatchObject({ ok: true, events: 401 });
+    const heads = [before, await readHead(store.db)];
+    expect(heads[1]?.seq).toBe(before.seq + 1205);
+    expect(verifyChain(await chainFrom(store.db, 1, 10_000), heads)).toMatchObject({ ok: true });
+    expect((await store.db.transaction((tx) => lockHeads(tx, other))).entry.seq).toBe(401);
+    expect(await store.db.transaction((tx) => recordAll(tx, researcher, []))).toEqual([]);
   });
 
   it("goes with its transaction when that is rolled back (REC-01)", async () => {

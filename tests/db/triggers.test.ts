@@ -240,6 +240,10 @@ describe("numbers", () => {
     await store.db.execute(sql`update notebooks set next_number = next_number + 1 where id = ${notebookId}`);
     await refused(sql`update audit_heads set seq = seq + 2 where id = 'store'`);
     await refused(sql`update audit_heads set seq = 0 where id = 'store'`);
+    await refused(sql`update audit_heads set seq = seq + 1, hash = repeat('f', 64) where id = 'store'`);
+    await refused(sql`insert into events (seq, at, action, object_kind, object_id, detail, previous_hash, hash)
+      select h.seq + n, now(), 'x', 'x', 'x', '{}', case n when 1 then h.hash else 'another' end, 'x' || n
+      from audit_heads h, generate_series(1, 2) n where h.id = 'store'`);
     const event = (
       seq: SQL,
     ) => sql`insert into events (seq, at, action, object_kind, object_id, detail, previous_hash, hash)

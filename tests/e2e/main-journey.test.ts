@@ -18,7 +18,7 @@ test("an entry is written, returned, revised, countersigned and found by a salt 
   laboratory,
   expectAnswers,
 }) => {
-  test.setTimeout(300_000);
+  test.setTimeout(600_000);
   const okafor = await as("R. Okafor");
   const label = await beginEntry(okafor.page, "Descaling baths");
   await title(okafor.page, "Citric and phosphoric bath, first trial");

@@ -97,5 +97,7 @@ export async function countersign(page: Page, label: string, password: string): 
 
 /** Waits until the counterfoil says that everything typed is committed. */
 export async function saved(page: Page): Promise<void> {
-  await expect(page.getByRole("complementary", { name: "Counterfoil" }).getByText("Saved", { exact: true })).toBeVisible();
+  await expect(
+    page.getByRole("complementary", { name: "Counterfoil" }).getByText("Saved", { exact: true }),
+  ).toBeVisible();
 }
