@@ -145,6 +145,7 @@ export function CompoundDialog({ request, onClose }: { request: CompoundRequest;
       }
     >
       <CompoundField
+        field="asked compound"
         label="Compound"
         chosen={null}
         chosenId=""

@@ -1,7 +1,8 @@
 "use client";
 // The whole editable body of a leaf: fields above the page, toolbar, page, blocks. It saves and solves through HTTP alone.
 import { useEffect, useRef, useState } from "react";
-import { type Outbox, openOutbox } from "./outbox.ts";
+import { type FieldKeep, openFieldKeep } from "./field-keep.ts";
+import { openOutbox } from "./outbox.ts";
 import type { Outline } from "./outline.ts";
 import { Page } from "./page.tsx";
 import { UnsavedFields } from "./page-context.tsx";
@@ -11,8 +12,6 @@ import type { SaveStatus } from "./save-status.ts";
 export type PageEditorProps = {
   revisionId: string;
   person: { id: string; name: string };
-  /** a word for the session: another one begins anew, with a client id of its own */
-  sessionKey: string;
   decimalSign: "." | ",";
   timeZone: string;
   /** when the server recorded the entry's first revision, ISO 8601 in UTC */
@@ -24,10 +23,11 @@ export type PageEditorProps = {
 };
 
 export function PageEditor(props: PageEditorProps) {
-  return <OpenPage key={`${props.revisionId} ${props.person.id} ${props.sessionKey}`} {...props} />;
+  // Another person begins anew. The same one who has signed in again goes on where they were (ADM-01).
+  return <OpenPage key={`${props.revisionId} ${props.person.id}`} {...props} />;
 }
 
-type Opened = { provider: Provider; line: PageLine };
+type Opened = { provider: Provider; keep: FieldKeep | null; line: PageLine };
 
 function OpenPage({ revisionId, person, onStatus, onState, ...rest }: PageEditorProps) {
   const [opened, setOpened] = useState<Opened | null>(null);
@@ -37,26 +37,30 @@ function OpenPage({ revisionId, person, onStatus, onState, ...rest }: PageEditor
   useEffect(() => {
     let isGone = false;
     let provider: Provider | null = null;
-    let outbox: Outbox | null = null;
-    void openOutbox(id, revisionId)
-      // Without a store the page still saves; the status says that this device keeps nothing.
-      .catch(() => null)
-      .then((made) => {
-        outbox = made;
-        if (isGone) return made?.close();
-        let first: PageLine | null = null;
-        const opening = openProvider({
-          revisionId,
-          person: { id, name },
-          outbox,
-          onChange: (line) => {
-            first = line;
-            if (provider !== null) setOpened({ provider, line });
-          },
-        });
-        provider = opening;
-        if (first !== null) setOpened({ provider: opening, line: first });
+    // Without a store the page still saves; the status says that this device keeps nothing.
+    const device = [
+      openOutbox(id, revisionId).catch(() => null),
+      openFieldKeep(id, revisionId).catch(() => null),
+    ] as const;
+    void Promise.all(device).then(([outbox, keep]) => {
+      if (isGone) {
+        outbox?.close();
+        keep?.close();
+        return;
+      }
+      let first: PageLine | null = null;
+      const opening = openProvider({
+        revisionId,
+        person: { id, name },
+        outbox,
+        onChange: (line) => {
+          first = line;
+          if (provider !== null) setOpened({ provider, keep, line });
+        },
       });
+      provider = opening;
+      if (first !== null) setOpened({ provider: opening, keep, line: first });
+    });
     return () => {
       isGone = true;
       provider?.destroy();
@@ -79,13 +83,14 @@ function OpenPage({ revisionId, person, onStatus, onState, ...rest }: PageEditor
     if (state !== undefined && state !== "draft") heard.current.onState?.(state);
   }, [state]);
 
-  // What is typed into a field and not entered yet is nowhere but in the field.
+  // Where the device keeps nothing, what is typed into a field and not entered yet is nowhere but in the field.
+  const isNowhereElse = opened !== null && opened.keep === null && unsavedFields > 0;
   useEffect(() => {
-    if (unsavedFields === 0) return;
+    if (!isNowhereElse) return;
     const ask = (event: BeforeUnloadEvent) => event.preventDefault();
     window.addEventListener("beforeunload", ask);
     return () => window.removeEventListener("beforeunload", ask);
-  }, [unsavedFields]);
+  }, [isNowhereElse]);
 
   if (opened === null || !opened.line.isLoaded) {
     return (
@@ -97,7 +102,7 @@ function OpenPage({ revisionId, person, onStatus, onState, ...rest }: PageEditor
     );
   }
   return (
-    <UnsavedFields onCount={setUnsavedFields}>
+    <UnsavedFields keep={opened.keep} onCount={setUnsavedFields}>
       <Page revisionId={revisionId} person={person} provider={opened.provider} line={opened.line} {...rest} />
     </UnsavedFields>
   );

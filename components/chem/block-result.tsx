@@ -48,10 +48,10 @@ export function BlockResult({
 }: BlockResultProps) {
   return (
     <div className="block-result">
-      <SideRow label="Mixing">
+      <SideRow level={3} label="Mixing">
         <MixingCautions cautions={cautions} />
       </SideRow>
-      <SideRow label="Answer" long>
+      <SideRow level={3} label="Answer" long>
         {solved === null ? (
           <Unsolved refusals={refusals} stillSolving={stillSolving || held} />
         ) : (
@@ -66,20 +66,20 @@ export function BlockResult({
       {solved === null ? null : (
         <>
           {solved.comparison === null ? null : (
-            <SideRow label="Meter">
+            <SideRow level={3} label="Meter">
               <Comparison comparison={solved.comparison} measuredText={measuredText} />
             </SideRow>
           )}
-          <SideRow label="Balances" note="numbers at the root" long>
+          <SideRow level={3} label="Balances" note="numbers at the root" long>
             <Balances solved={solved} isStatic={isStatic} />
           </SideRow>
-          <SideRow label="Solution" long>
+          <SideRow level={3} label="Solution" long>
             <SpeciesTable solved={solved} />
             <Unfold summary="What a pocket calculator needs" isStatic={isStatic}>
               <PocketTable solved={solved} />
             </Unfold>
           </SideRow>
-          <SideRow label="Constants" long>
+          <SideRow level={3} label="Constants" long>
             <ConstantsTable constants={solved.constants} />
           </SideRow>
           {sweeps === null ? null : <Plots solved={solved} sweeps={sweeps} name={name} isStatic={isStatic} />}
@@ -111,11 +111,11 @@ function Plots({
     isStatic ? <PlotStatic key={model.title} model={model} /> : <PlotFigure key={model.title} model={model} />;
   return (
     <>
-      <SideRow label="Residual" long>
+      <SideRow level={3} label="Residual" long>
         <div className="plot-pair">{residuals.map(plot)}</div>
         {isStatic ? null : <SweepDownload sweeps={sweeps} name={name} />}
       </SideRow>
-      <SideRow label="Fractions" note="and capacity" long>
+      <SideRow level={3} label="Fractions" note="and capacity" long>
         <div className="plot-pair">{others.map(plot)}</div>
       </SideRow>
     </>

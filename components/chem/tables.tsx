@@ -3,6 +3,7 @@
 import type { ReactNode } from "react";
 import type { ConstantUsed, SolvedBlock } from "../../chem/index.ts";
 import { fixed, formatNumber, showDecimal } from "../format.ts";
+import { ScrollRegion } from "../ui/scroll-region.tsx";
 import { Formula } from "./formula.tsx";
 import { FormulaText } from "./formula-text.tsx";
 import { NOT_EVALUATED } from "./number-text.ts";
@@ -35,7 +36,7 @@ export function PocketTable({ solved }: { solved: SolvedBlock }) {
     ...solved.constants.map((constant) => ({
       key: constant.id,
       name: <Formula tex={`\\mathrm{p}K_{\\mathrm{a}${constant.step}}`} />,
-      what: constant.familyName,
+      what: `${constant.familyName}, step\u00a0${constant.step}`,
       tabulated: showDecimal(constant.pKa),
       used: fixed(constant.conditional, 6),
     })),
@@ -59,8 +60,8 @@ export function PocketTable({ solved }: { solved: SolvedBlock }) {
       <tbody>
         {rows.map((row) => (
           <tr key={row.key}>
-            <th scope="row">{row.name}</th>
-            <td>{row.what}</td>
+            <td className="symbol">{row.name}</td>
+            <th scope="row">{row.what}</th>
             <td className="r">{row.tabulated === null ? null : <AtPoint text={row.tabulated} after={5} />}</td>
             <td className="r">
               <AtPoint text={row.used} after={7} />
@@ -91,10 +92,10 @@ export function SpeciesTable({ solved }: { solved: SolvedBlock }) {
       <tbody>
         {solved.species.map((species) => (
           <tr key={`${species.family} ${species.name}`}>
-            <th scope="row">
+            <td className="symbol">
               <Formula tex={species.latex} />
-            </th>
-            <td>{species.name}</td>
+            </td>
+            <th scope="row">{species.name}</th>
             <td className="r">
               <ColumnQuantity value={species.concentration} figures={5} />
             </td>
@@ -223,12 +224,11 @@ function TableRegion({
   children: ReactNode;
 }) {
   return (
-    // biome-ignore lint/a11y/noNoninteractiveTabindex: a region that scrolls sideways has to be reached by keyboard
-    <section className="scroll" tabIndex={0} aria-label={`${caption}, scrolls sideways`}>
+    <ScrollRegion label={caption}>
       <table className={isWide ? "columns wide" : "columns"}>
         <caption>{caption}</caption>
         {children}
       </table>
-    </section>
+    </ScrollRegion>
   );
 }

@@ -1,7 +1,7 @@
 "use client";
 // A typed number. It is kept as typed: the field never rewrites its digits. It is read on Enter or on leaving, the
 // reading is echoed where it could surprise, and a text that could mean two numbers is asked about (CAL-01, CAL-02).
-import { type KeyboardEvent, type ReactNode, type Ref, useId, useState } from "react";
+import { type KeyboardEvent, type ReactNode, type Ref, useEffect, useId, useState } from "react";
 import { type DecimalSign, readTyped, showDecimal } from "../format.ts";
 import { Button } from "./button.tsx";
 import { describedBy, FieldFrame, fieldIds } from "./field-parts.tsx";
@@ -16,8 +16,12 @@ export type NumberTextProps = {
   value: string;
   /** Called with the new decimal, or with "" when the field was emptied; never for a text that could not be read. */
   onCommit: (decimal: string) => void;
-  /** Called at each keystroke with whether the text differs from what is committed. */
-  onPending?: (pending: boolean) => void;
+  /** Called with the text that stands here and is not committed, and with null when nothing does. */
+  onText?: (text: string | null) => void;
+  /** A text that was typed here before and not committed: it stands in the field at first, and only Enter takes it. */
+  offered?: string | null;
+  /** Said below the field as long as that text stands there. */
+  offeredHint?: ReactNode;
   decimalSign?: DecimalSign;
   /** A sentence when a readable number is not possible here: "An amount is above zero." */
   refuse?: (decimal: string) => string | undefined;
@@ -41,7 +45,9 @@ export function NumberText({
   error,
   value,
   onCommit,
-  onPending,
+  onText,
+  offered = null,
+  offeredHint,
   decimalSign = ".",
   refuse,
   unit,
@@ -55,18 +61,28 @@ export function NumberText({
 }: NumberTextProps) {
   const own = useId();
   const ids = fieldIds(id ?? own);
-  const [text, setText] = useState(() => typedText(value, decimalSign));
+  const [isOffered, setOffered] = useState(offered !== null && offered !== typedText(value, decimalSign));
+  const [text, setText] = useState(() => (isOffered && offered !== null ? offered : typedText(value, decimalSign)));
+  const [isPending, setPending] = useState(isOffered);
   const [committed, setCommitted] = useState(value);
+  const [seen, setSeen] = useState(value);
   const [doubt, setDoubt] = useState<Doubt>();
   const [echo, setEcho] = useState<string>();
 
-  // Somebody else, or an undo, changed the value: what they committed is shown.
-  if (value !== committed) {
-    setCommitted(value);
-    setText(typedText(value, decimalSign));
-    setDoubt(undefined);
-    setEcho(undefined);
+  if (value !== seen) {
+    setSeen(value);
+    if (value !== committed) {
+      // Somebody else, or an undo, changed the value: it is shown, but not in place of what is being typed here.
+      setCommitted(value);
+      setEcho(undefined);
+      if (!isPending || text === typedText(value, decimalSign)) {
+        setText(typedText(value, decimalSign));
+        setPending(false);
+        setDoubt(undefined);
+      }
+    }
   }
+  useEffect(() => onText?.(isPending ? text : null), [onText, isPending, text]);
 
   const take = (decimal: string, surprising: boolean) => {
     const reason = decimal === "" ? (required ? "Write a number." : undefined) : refuse?.(decimal);
@@ -77,13 +93,14 @@ export function NumberText({
     }
     setDoubt(undefined);
     setEcho(surprising ? decimal : undefined);
-    onPending?.(false);
+    setPending(false);
     if (decimal === committed) return;
     setCommitted(decimal);
     onCommit(decimal);
   };
 
   const read = () => {
+    setOffered(false);
     if (text.trim() === "") return take("", false);
     const typed = readTyped(text, decimalSign);
     if (typed.ok) return take(typed.decimal, typed.foreign || differsInLook(text, typed.decimal, decimalSign));
@@ -105,7 +122,8 @@ export function NumberText({
       event.stopPropagation();
       setText(typedText(committed, decimalSign));
       setDoubt(undefined);
-      onPending?.(false);
+      setOffered(false);
+      setPending(false);
     }
   };
 
@@ -117,7 +135,7 @@ export function NumberText({
       ids={ids}
       label={label}
       aside={aside}
-      hint={hint}
+      hint={isOffered ? offeredHint : hint}
       error={wrong}
       className={className}
       heard={doubt !== undefined}
@@ -160,18 +178,20 @@ export function NumberText({
         aria-invalid={wrong || readings ? true : undefined}
         aria-describedby={describedBy(
           ids,
-          { hint: Boolean(hint), error: Boolean(wrong) },
+          { hint: Boolean(isOffered ? offeredHint : hint), error: Boolean(wrong) },
           echo !== undefined || readings ? more : undefined,
         )}
         onChange={(event) => {
           setText(event.target.value);
           setDoubt(undefined);
           setEcho(undefined);
-          onPending?.(event.target.value !== typedText(committed, decimalSign));
+          setOffered(false);
+          setPending(event.target.value !== typedText(committed, decimalSign));
         }}
         onKeyDown={onKeyDown}
         onBlur={() => {
-          read();
+          // What was only offered is not taken by passing through.
+          if (!isOffered) read();
           onBlur?.();
         }}
       />

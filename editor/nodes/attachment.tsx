@@ -19,6 +19,7 @@ export function AttachmentView({ editor, node, updateAttributes, deleteNode, sel
       {editor.isEditable ? (
         <div className="row-of">
           <EnteredText
+            field={`file ${id} caption`}
             label="Caption"
             value={caption}
             most={500}

@@ -3,6 +3,7 @@
 import { useQuery } from "@tanstack/react-query";
 import { useEffect, useState } from "react";
 import { formatDateTime, formatPh } from "../../components/format.ts";
+import { Vouch } from "../../components/leaf/counterfoil.tsx";
 import { Fingerprint } from "../../components/leaf/fingerprint.tsx";
 import { StateMark } from "../../components/leaf/state-mark.tsx";
 import { keptSolvesQuery } from "../../components/query/results.ts";
@@ -12,8 +13,7 @@ import type { Answer } from "./answer.ts";
 
 export function BlockVouch({ block, number, answer }: { block: EquilibriumBlock; number: number; answer: Answer }) {
   return (
-    <aside className="vouch" aria-label={`What vouches for E${number}`}>
-      <h3>Calculation E{number}</h3>
+    <Vouch title={`Calculation E${number}`} label={`What vouches for E${number}`}>
       <p>
         {answer.shown === null ? (
           <StateMark state="waiting">Not solved</StateMark>
@@ -25,13 +25,13 @@ export function BlockVouch({ block, number, answer }: { block: EquilibriumBlock;
       </p>
       {answer.key === null ? null : (
         <>
-          <h3>Key of the inputs{answer.isHeld ? ", earlier" : ""}</h3>
+          <p className="head">Key of the inputs{answer.isHeld ? ", earlier" : ""}</p>
           <Fingerprint hex={answer.key} label="Key of the inputs" />
           <p className="note">The result is pinned when the page is signed.</p>
         </>
       )}
       <KeptSolves blockId={block.id} shownKey={answer.key} />
-    </aside>
+    </Vouch>
   );
 }
 

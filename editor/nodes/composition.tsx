@@ -126,6 +126,7 @@ function Row({
     <fieldset className={isBad ? "pour-row bad" : "pour-row"} aria-label={`Row ${index + 1}`}>
       <CompoundField
         className="name"
+        field={`row ${row.id} compound`}
         label={`Poured in, ${place}`}
         chosen={item ?? null}
         chosenId={row.compound}
@@ -139,6 +140,7 @@ function Row({
       />
       <span className="fixed-cell">{item === undefined ? null : <FormulaText formula={item.formula} />}</span>
       <EnteredNumber
+        field={`row ${row.id} amount`}
         label={`Amount, ${place}`}
         value={row.amount}
         decimalSign={decimalSign}
@@ -157,6 +159,7 @@ function Row({
       {isWeighed || isPoured ? (
         <div>
           <EnteredNumber
+            field={`row ${row.id} massFraction`}
             label={`Mass fraction, ${place}`}
             value={row.massFraction}
             decimalSign={decimalSign}
@@ -172,6 +175,7 @@ function Row({
           {isPoured ? (
             <>
               <EnteredNumber
+                field={`row ${row.id} density`}
                 label={`Density, ${place}`}
                 hint="density, g/mL"
                 value={row.density}
@@ -188,6 +192,7 @@ function Row({
         <span className="fixed-cell r faint">not needed</span>
       )}
       <EnteredText
+        field={`row ${row.id} lot`}
         label={`Lot, ${place}`}
         value={row.lot}
         most={120}

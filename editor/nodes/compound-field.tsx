@@ -2,13 +2,15 @@
 // A compound, looked up by name, synonym, CAS RN or formula. A combobox of our own: the library's keeps a hidden template in the
 // page, and React cannot find the caret in an editable page that holds one.
 import { useQuery } from "@tanstack/react-query";
-import { type KeyboardEvent, type Ref, useDeferredValue, useId, useState } from "react";
+import { type KeyboardEvent, type Ref, useDeferredValue, useEffect, useId, useState } from "react";
 import { FormulaText } from "../../components/chem/formula-text.tsx";
 import { type CompoundItem, compoundsQuery } from "../../components/query/compounds.ts";
 import { describedBy, FieldFrame, fieldIds } from "../../components/ui/field-parts.tsx";
-import { usePending } from "../page-context.tsx";
+import { useUnentered } from "../page-context.tsx";
 
 type CompoundFieldProps = {
+  /** the same each time the page is opened, and no other field's */
+  field: string;
   label: string;
   chosen: CompoundItem | null;
   chosenId: string;
@@ -21,6 +23,7 @@ type CompoundFieldProps = {
 };
 
 export function CompoundField({
+  field,
   label,
   chosen,
   chosenId,
@@ -32,22 +35,25 @@ export function CompoundField({
 }: CompoundFieldProps) {
   const ids = fieldIds(useId());
   const name = chosen?.name ?? chosenId;
-  const [typed, setTyped] = useState<string | null>(null);
+  const { kept, report } = useUnentered(field);
+  const [typed, setTyped] = useState(isForRow ? kept : null);
+  const [isBeingTyped, setBeingTyped] = useState(false);
   const [at, setAt] = useState(0);
-  const report = usePending();
   const asked = useDeferredValue(typed ?? "").trim();
   const found = useQuery(compoundsQuery(asked, isForRow ? 30 : 12));
   const all = asked === "" ? [] : (found.data?.items ?? []);
   // A family as a whole and a charged form cannot be poured in: a row is not offered them.
   const items = isForRow ? all.filter(canBePoured) : all;
-  const isOpen = typed !== null && typed.trim() !== "";
+  const isUnchosen = typed !== null && typed.trim() !== "" && typed.trim() !== name;
+  const isOpen = isBeingTyped && typed !== null && typed.trim() !== "";
+  useEffect(() => report(isUnchosen ? typed : null), [report, isUnchosen, typed]);
   const active = Math.min(at, Math.max(0, items.length - 1));
   const optionId = (index: number) => `${ids.control}-option-${index}`;
 
   const change = (text: string | null) => {
     setTyped(text);
     setAt(0);
-    report(text !== null && text.trim() !== "" && text.trim() !== name);
+    setBeingTyped(text !== null);
   };
   const pick = (item: CompoundItem | undefined) => {
     if (item === undefined) return;
@@ -55,6 +61,10 @@ export function CompoundField({
     onPick(item);
   };
   const onKeyDown = (event: KeyboardEvent<HTMLInputElement>) => {
+    if (event.key === "Escape" && typed !== null && !isOpen) {
+      event.stopPropagation();
+      return change(null);
+    }
     if (!isOpen) return;
     const by = event.key === "ArrowDown" ? 1 : event.key === "ArrowUp" ? -1 : 0;
     if (by !== 0 && items.length > 0) setAt((active + by + items.length) % items.length);
@@ -70,9 +80,13 @@ export function CompoundField({
       : found.isError
         ? "The library cannot be asked at the moment."
         : wordsFor(found.data?.casCheck ?? null, items.length, isForRow);
+  const wrong =
+    isUnchosen && !isBeingTyped && isForRow
+      ? `“${typed.trim()}” is not chosen yet. Choose a substance from the list; Escape leaves it.`
+      : error;
   return (
     <div className={className} style={{ position: "relative", minWidth: 0 }}>
-      <FieldFrame ids={ids} label={label} error={error}>
+      <FieldFrame ids={ids} label={label} error={wrong}>
         <input
           ref={ref}
           id={ids.control}
@@ -83,16 +97,20 @@ export function CompoundField({
           aria-expanded={isOpen}
           aria-controls={`${ids.control}-list`}
           aria-activedescendant={isOpen && items.length > 0 ? optionId(active) : undefined}
-          aria-invalid={error ? true : undefined}
-          aria-describedby={describedBy(ids, { hint: false, error: Boolean(error) })}
+          aria-invalid={wrong ? true : undefined}
+          aria-describedby={describedBy(ids, { hint: false, error: Boolean(wrong) })}
           autoComplete="off"
           spellCheck={false}
           placeholder="name, CAS number, formula"
           value={typed ?? name}
           onChange={(event) => change(event.target.value)}
           onKeyDown={onKeyDown}
-          // What was not chosen from the list names no compound: the field shows again what stands there.
-          onBlur={() => change(null)}
+          onFocus={() => setBeingTyped(typed !== null)}
+          // What was not chosen from the list names no compound. In a row it stays, with words, until it is chosen or left.
+          onBlur={() => {
+            setBeingTyped(false);
+            if (!isForRow || !isUnchosen) change(null);
+          }}
         />
       </FieldFrame>
       {isOpen ? (

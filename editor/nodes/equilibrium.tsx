@@ -47,9 +47,10 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
     >
       <BlockVouch block={block} number={number} answer={answer} />
       <header className="eq-head">
-        <span className="tag-id">E{number}</span>
-        <div style={{ flex: "1 1 280px", maxWidth: 560 }}>
+        <h2 className="tag-id">E{number}</h2>
+        <div className="eq-title">
           <EnteredText
+            field={`block ${id} title`}
             label={`Title of E${number}`}
             value={block.title}
             most={200}
@@ -71,7 +72,7 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
           </Button>
         </span>
       </header>
-      <SideRow label="Composition" note={countOf(block.rows.length)} first long>
+      <SideRow level={3} label="Composition" note={countOf(block.rows.length)} first long>
         <Composition
           rows={block.rows}
           errors={errors}
@@ -87,9 +88,10 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
           onTakeOut={(rowId) => run(takeOutRow(id, rowId))}
         />
       </SideRow>
-      <SideRow label="Volume">
+      <SideRow level={3} label="Volume">
         <div className="row-of">
           <EnteredNumber
+            field={`block ${id} volume`}
             label="Made up to"
             value={block.volume}
             decimalSign={decimalSign}
@@ -106,7 +108,7 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
           />
         </div>
       </SideRow>
-      <SideRow label="Conditions">
+      <SideRow level={3} label="Conditions">
         <div className="row-of">
           <dl className="facts">
             <div>
@@ -121,6 +123,7 @@ export function EquilibriumView({ editor, node, getPos, selected }: NodeViewProp
             onChange={(activity) => run(setBlockField(id, "activity", activity))}
           />
           <EnteredNumber
+            field={`block ${id} measuredPH`}
             label="Measured pH"
             aside="by the meter"
             value={block.measuredPH}

@@ -60,7 +60,7 @@ function MentionView({ node }: NodeViewProps) {
   const item = compounds.get(id);
   return (
     <NodeViewWrapper as="span" className="cpd" data-compound={id}>
-      {item === undefined ? id.replace(/^[a-z]+:/, "").replaceAll("-", " ") : item.name}
+      {item === undefined ? id.replace(/^[a-z]+:/, "").replaceAll("-", " ") : item.name.replaceAll(" %", "\u00a0%")}
       {item === undefined || item.formula === "" ? null : (
         <span className="form">
           <FormulaText formula={item.formula} />

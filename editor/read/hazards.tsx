@@ -6,7 +6,7 @@ import type { HazardOfCompound } from "../../components/query/results.ts";
 export function Hazards({ hazards }: { hazards: readonly HazardOfCompound[] }) {
   if (hazards.length === 0) return null;
   return (
-    <SideRow label="Hazards" note="of the ingredients" long>
+    <SideRow label="Hazards" note="of the ingredients" level={3} long>
       {hazards.map(({ compound, name, record }) =>
         record?.classified === false ? (
           <div className="haz" key={compound}>

@@ -3,6 +3,7 @@ import type { ReactNode } from "react";
 import { BlockResult } from "../../components/chem/block-result.tsx";
 import { FormulaText } from "../../components/chem/formula-text.tsx";
 import { significant } from "../../components/format.ts";
+import { Vouch } from "../../components/leaf/counterfoil.tsx";
 import { Fingerprint } from "../../components/leaf/fingerprint.tsx";
 import { SideRow } from "../../components/leaf/side-row.tsx";
 import type { SolvedAnswer } from "../../components/query/results.ts";
@@ -27,21 +28,20 @@ export function StaticBlock({ block, number, answer, names, decimalSign }: Stati
   return (
     <section className="eq" aria-label={`Equilibrium block E${number}`}>
       {answer?.key == null ? null : (
-        <aside className="vouch" aria-label={`What vouches for E${number}`}>
-          <h3>Calculation E{number}</h3>
+        <Vouch title={`Calculation E${number}`} label={`What vouches for E${number}`}>
           <p>Engine {answer.engine}</p>
-          <h3>Key of the inputs</h3>
+          <p className="head">Key of the inputs</p>
           <Fingerprint hex={answer.key} label="Key of the inputs" />
-        </aside>
+        </Vouch>
       )}
       <header className="eq-head">
         <span className="tag-id">E{number}</span>
-        <h3>{block.title === "" ? "Equilibrium block" : block.title}</h3>
+        <h2>{block.title === "" ? "Equilibrium block" : block.title}</h2>
       </header>
       <SideRow
         label="Composition"
         note={block.rows.length === 1 ? "1 row" : `${block.rows.length} rows`}
-        level={4}
+        level={3}
         first
         long
       >
@@ -78,7 +78,7 @@ export function StaticBlock({ block, number, answer, names, decimalSign }: Stati
           })}
         />
       </SideRow>
-      <SideRow label="Conditions" level={4}>
+      <SideRow label="Conditions" level={3}>
         <dl className="facts">
           {block.volume === "" ? null : <Fact name="Made up to">{`${shown(block.volume)} ${block.volumeUnit}`}</Fact>}
           <Fact name="Temperature">{shown(block.temperatureC)} °C</Fact>

@@ -6,6 +6,7 @@ import { FormulaText } from "../../components/chem/formula-text.tsx";
 import { formatDate } from "../../components/format.ts";
 import type { AttachmentMeta } from "../../components/query/attachments.ts";
 import type { SolvedAnswer } from "../../components/query/results.ts";
+import { ScrollRegion } from "../../components/ui/scroll-region.tsx";
 import {
   blocksOf,
   type EquilibriumBlock,
@@ -34,13 +35,15 @@ export function StaticPage({ page, head, names, blocks, attachments, decimalSign
   const known: Known = { names, blocks, attachments, decimalSign, order: blocksOf(page), next: 0 };
   return (
     <>
-      {head.title === "" ? null : <h1 className="title">{head.title}</h1>}
-      {head.doneOn === "" ? null : (
-        <p className="under-title">
-          Done on {formatDate(head.doneOn)}
-          {head.lateReason === "" ? null : `; recorded late: ${head.lateReason}`}
-        </p>
-      )}
+      <header className="set-in">
+        <h1 className={head.title === "" ? "title faint" : "title"}>{head.title || "Without a title"}</h1>
+        {head.doneOn === "" ? null : (
+          <p className="under-title">
+            Done on {formatDate(head.doneOn)}
+            {head.lateReason === "" ? null : `; recorded late: ${head.lateReason}`}
+          </p>
+        )}
+      </header>
       <div className="written">{childrenOf(page, known)}</div>
     </>
   );
@@ -94,12 +97,11 @@ function shown(node: PageNode, known: Known): ReactNode {
       return <br />;
     case "table":
       return (
-        // biome-ignore lint/a11y/noNoninteractiveTabindex: a region that scrolls has to be reached by keyboard
-        <section className="scroll" tabIndex={0} aria-label="Table, scrolls sideways">
+        <ScrollRegion label="Table">
           <table>
             <tbody>{childrenOf(node, known)}</tbody>
           </table>
-        </section>
+        </ScrollRegion>
       );
     case "tableRow":
       return <tr>{childrenOf(node, known)}</tr>;
@@ -184,7 +186,7 @@ function mention(id: string, { names }: Known): ReactNode {
   const compound = Object.hasOwn(names, id) ? names[id] : undefined;
   return (
     <span className="cpd">
-      {compound?.name ?? id}
+      {unbrokenPercent(compound?.name ?? id)}
       {compound === undefined || compound.formula === "" ? null : (
         <span className="form">
           <FormulaText formula={compound.formula} />
@@ -192,6 +194,11 @@ function mention(id: string, { names }: Known): ReactNode {
       )}
     </span>
   );
+}
+
+/** "85 %" stays on one line. */
+function unbrokenPercent(name: string): string {
+  return name.replaceAll(" %", "\u00a0%");
 }
 
 function attachment(node: PageNode, { attachments }: Known): ReactNode {

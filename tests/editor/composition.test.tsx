@@ -40,7 +40,7 @@ function show(more: Partial<CompositionProps> = {}, decimalSign: "." | "," = "."
   const onCount = vi.fn();
   render(
     <QueryClientProvider client={new QueryClient()}>
-      <UnsavedFields onCount={onCount}>
+      <UnsavedFields keep={null} onCount={onCount}>
         <PageProvider
           value={{
             revisionId: "rev",

@@ -19,7 +19,7 @@ export default async function AccountPage() {
   return (
     <Leaf
       counterfoil={
-        <Counterfoil head={<StubHead number={actor.printedName} of={actor.email} />}>
+        <Counterfoil head={<StubHead number={<span className="as-name">{actor.printedName}</span>} of={actor.email} />}>
           <StubSection title="Roles">
             {actor.roles.length === 0 ? <p>None yet. An administrator gives them.</p> : <p>{actor.roles.join(", ")}</p>}
             <p className="note">Nobody changes their own roles. The name stays with what it signed.</p>
@@ -56,7 +56,7 @@ export default async function AccountPage() {
             { id: "since", head: "Signed in" },
             { id: "used", head: "Last used" },
             { id: "end", head: "Ends at the latest" },
-            { id: "act", head: "" },
+            { id: "act", head: "Act" },
           ]}
           rows={sessions.map((session) => ({
             key: session.id,

@@ -30,7 +30,11 @@ export default async function SearchPage({ searchParams }: Props) {
   const { actor, read } = await readForPage((person, db) => readSearch(db, person, address, after));
   const { choices, faults, found } = read;
   return (
-    <Leaf counterfoil={found === null ? undefined : <FoundStub found={found} address={address} />}>
+    <Leaf
+      counterfoil={
+        found === null ? <LookedThrough notebooks={choices.notebooks} /> : <FoundStub found={found} address={address} />
+      }
+    >
       <LeafTitle under="All entries that you may read, by what was poured in, by words, and by who and when.">
         Search
       </LeafTitle>
@@ -76,6 +80,25 @@ async function readSearch(db: Db, actor: Actor, address: Asked, after: string | 
       isNarrowed: (query.narrow ?? []).length > 0,
     },
   };
+}
+
+/** Before anything is asked: what is looked through. */
+function LookedThrough({ notebooks }: { notebooks: Awaited<ReturnType<typeof searchChoices>>["notebooks"] }) {
+  return (
+    <Counterfoil>
+      <StubSection title="Looked through">
+        {notebooks.length === 0 ? <p className="note">No notebook: you are a member of none.</p> : null}
+        <ul className="plain">
+          {notebooks.map(({ id, code, title }) => (
+            <li key={id}>
+              <Link href={`/notebooks/${code}`}>{code}</Link> {title}
+            </li>
+          ))}
+        </ul>
+        <p className="note">Every revision in them, drafts too. Nothing of other notebooks is found or counted.</p>
+      </StubSection>
+    </Counterfoil>
+  );
 }
 
 function FoundStub({ found, address }: { found: Found; address: Asked }) {
@@ -150,6 +173,7 @@ function Hits({ found, address, timeZone, decimalSign, isFirst }: HitsProps) {
   return (
     <>
       <PlainTable
+        className="tight"
         caption={`${formatCount(found.total)} ${found.total === 1 ? "entry" : "entries"}, newest first`}
         columns={[
           { id: "label", head: "Entry", kind: "mono" },
@@ -207,7 +231,9 @@ function cellsOf(hit: SearchHit, timeZone: string, decimalSign: "." | ",") {
     [...new Set(hit.lines.map(({ role }) => role))].join(", "),
     calculated === undefined ? "" : formatPh(calculated, 2, decimalSign),
     measured === undefined ? "" : formatPh(measured, 2, decimalSign),
-    hit.author.name,
+    <span key="author" className="nowrap">
+      {hit.author.name}
+    </span>,
     formatDate(hit.recordedAt, timeZone),
     <span key="state">
       <StateMark state={hit.state} />

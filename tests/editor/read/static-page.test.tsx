@@ -5,7 +5,7 @@ import { blocksOf, type PageJson } from "../../../editor/schema/index.ts";
 import { fullPage, paragraph } from "../schema/pages.ts";
 
 const names = {
-  "reagent:phosphoric-acid-85": { name: "phosphoric acid, 85 %", formula: "H3PO4" },
+  "reagent:phosphoric-acid-85": { name: "phosphoric acid, 85\u00a0%", formula: "H3PO4" },
   "reagent:citric-acid-monohydrate": { name: "citric acid monohydrate", formula: "C6H8O7·H2O" },
 };
 const attachments = {
@@ -50,7 +50,7 @@ describe("StaticPage", () => {
 
   it("names mentions from the library, and shows a file with its length and its whole SHA-256 (FIL-01)", () => {
     const html = render(fullPage);
-    expect(html).toContain("phosphoric acid, 85 %");
+    expect(html).toContain("phosphoric acid, 85\u00a0%");
     expect(html).toContain("meter &lt;m2&gt;.csv");
     expect(html).toContain("3.1 KiB");
     expect(html).toContain(Array.from({ length: 16 }, () => "abab").join(" "));

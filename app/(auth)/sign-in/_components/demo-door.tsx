@@ -33,7 +33,7 @@ export function DemoDoor({ people, next, enter }: Props) {
                   onClick={() => setFilled({ email: person.email, password: person.password })}
                 >
                   {person.printedName}
-                </button>{" "}
+                </button>
                 <span className="faint">{person.about}</span>
               </li>
             ))}

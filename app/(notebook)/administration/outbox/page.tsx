@@ -30,9 +30,9 @@ export default async function OutboxPage({ searchParams }: { searchParams: Promi
         </EmptyState>
       ) : null}
       {read.mails.map(({ id, to, subject, text, createdAt }) => (
-        <SideRow key={id} label={to} note={formatDateTime(createdAt, actor.timeZone)} level={2}>
+        <SideRow key={id} label={formatDateTime(createdAt, actor.timeZone)} level={2}>
           <p>
-            <b>{subject}</b>
+            <b>{subject}</b> <span className="faint">to {to}</span>
           </p>
           <p className="mail-text">{text}</p>
         </SideRow>

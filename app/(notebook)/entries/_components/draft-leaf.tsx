@@ -20,7 +20,6 @@ type Props = {
   person: { id: string; name: string };
   decimalSign: "." | ",";
   timeZone: string;
-  sessionKey: string;
   recordedAt: string;
   maySign: boolean;
   /** a sentence, when the person may not */
@@ -45,7 +44,6 @@ export function DraftLeaf({
   person,
   decimalSign,
   timeZone,
-  sessionKey,
   recordedAt,
   maySign,
   whyNot,
@@ -102,7 +100,6 @@ export function DraftLeaf({
         person={person}
         decimalSign={decimalSign}
         timeZone={timeZone}
-        sessionKey={sessionKey}
         head={{ recordedAt }}
         onStatus={setStatus}
         onState={setState}

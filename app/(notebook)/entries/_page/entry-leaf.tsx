@@ -81,7 +81,6 @@ function Draft({ entry, actor, sections }: { entry: EntryRead; actor: Actor; sec
       person={{ id: actor.id, name: actor.printedName }}
       decimalSign={actor.decimalSign}
       timeZone={actor.timeZone}
-      sessionKey={actor.sessionId.slice(-8)}
       recordedAt={createdAt.toISOString()}
       maySign={may.sign}
       whyNot={may.sign ? null : `${entry.author.printedName}, the author, signs.`}

@@ -57,8 +57,8 @@ export function FilesSection({ files }: { files: SignedContent["attachments"] })
   );
 }
 
-/** The seals of the revision, and the full hash that decides. */
-export function SealsSection({ entry, timeZone }: Props) {
+/** The seals of the revision, and the full hash that decides, unless that stands on the leaf already. */
+export function SealsSection({ entry, timeZone, withoutHash }: Props & { withoutHash?: boolean }) {
   const [first] = entry.signatures;
   if (first === undefined) return null;
   return (
@@ -78,12 +78,14 @@ export function SealsSection({ entry, timeZone }: Props) {
           </Sealed>
         </StubSection>
       ))}
-      <StubSection title="Signed content, SHA-256">
-        <Fingerprint hex={first.contentSha256} label="SHA-256 of the signed content" />
-        {entry.signatures.length > 1 ? (
-          <p className="note">Two like figures: author and witness signed the same SHA-256.</p>
-        ) : null}
-      </StubSection>
+      {withoutHash ? null : (
+        <StubSection title="Signed content, SHA-256">
+          <Fingerprint hex={first.contentSha256} label="SHA-256 of the signed content" />
+          {entry.signatures.length > 1 ? (
+            <p className="note">Two like figures: author and witness signed the same SHA-256.</p>
+          ) : null}
+        </StubSection>
+      )}
     </>
   );
 }

@@ -59,6 +59,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
         </EmptyState>
       ) : (
         <PlainTable
+          className="tight"
           caption={after === undefined ? "Entries, newest first" : `Entries below number ${after}`}
           columns={[
             { id: "label", head: "Entry", kind: "mono" },

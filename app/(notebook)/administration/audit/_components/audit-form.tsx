@@ -28,8 +28,8 @@ export function AuditForm({ asked, people, actions }: Props) {
         value={action}
         onChange={setAction}
       />
-      <TextField label="From" type="date" name="from" defaultValue={asked.from} hint="UTC" />
-      <TextField label="To" type="date" name="to" defaultValue={asked.to} hint="UTC" />
+      <TextField label="From" aside="UTC" type="date" name="from" defaultValue={asked.from} />
+      <TextField label="To" aside="UTC" type="date" name="to" defaultValue={asked.to} />
       <input type="hidden" name="person" value={person === "any" ? "" : person} />
       <input type="hidden" name="action" value={action === "any" ? "" : action} />
       <Button type="submit">Show these</Button>

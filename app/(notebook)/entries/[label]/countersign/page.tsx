@@ -56,7 +56,7 @@ export default async function CountersignPage({ params }: Props) {
       }
       sections={
         <>
-          <SealsSection entry={entry} timeZone={actor.timeZone} />
+          <SealsSection entry={entry} timeZone={actor.timeZone} withoutHash />
           <PeopleSections entry={entry} />
           <DaysSection entry={entry} timeZone={actor.timeZone} />
           <FilesSection files={content.attachments} />
