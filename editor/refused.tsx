@@ -26,7 +26,8 @@ export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedPro
     if (isClosed && waiting === 0) void refetch();
   }, [isClosed, waiting, refetch]);
   const copy = useCopy();
-  const kept = (stray.data ?? []).map((update) => update.text).filter((text) => text.trim() !== "");
+  // One change may hold half a word: what was typed in one go reads as it was typed.
+  const kept = (stray.data ?? []).map((update) => update.text).join("").trim();
   if (line.kind !== "refused" && !isClosed) return null;
   if (isClosed) {
     return (
@@ -35,8 +36,8 @@ export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedPro
         finding="This revision is no longer a draft."
         actions={
           <>
-            {kept.length > 0 ? (
-              <Button onClick={() => void copy(kept.join("\n"))}>Copy what was not added</Button>
+            {kept !== "" ? (
+              <Button onClick={() => void copy(kept)}>Copy what was not added</Button>
             ) : null}
             <Button onClick={() => window.location.reload()}>Show the page as it stands now</Button>
           </>
@@ -47,10 +48,10 @@ export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedPro
             ? `${line.waiting} of your changes came too late and were not added. They are kept on this device.`
             : "Nothing more is added to it."}
         </p>
-        {kept.length > 0 ? (
+        {kept !== "" ? (
           <>
             <p>These words of yours came too late. They are kept for you, and can be put into the next revision:</p>
-            <blockquote className="reason">{kept.join("\n")}</blockquote>
+            <blockquote className="reason">{kept}</blockquote>
           </>
         ) : null}
       </Notice>

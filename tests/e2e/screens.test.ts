@@ -108,7 +108,14 @@ test("at 320 px, or at 400 %, nothing of a frozen page is cut off (ACC-09)", asy
   const page = await open(browser, laboratory.url, { width: 320, colorScheme: "light", isPhone: true });
   watch.follow(page);
   await signIn(page, laboratory, "R. Okafor");
-  for (const path of ["/desk", "/notebooks/DSB", "/search?words=bath", "/entries/DSB-0001", "/entries/DSB-0005", "/account"]) {
+  for (const path of [
+    "/desk",
+    "/notebooks/DSB",
+    "/search?words=bath",
+    "/entries/DSB-0001",
+    "/entries/DSB-0005",
+    "/account",
+  ]) {
     await page.goto(path);
     await expectNoSidewaysScroll(page);
   }
@@ -149,7 +156,11 @@ test("a dialog has no finding and gives the focus back (ACC-03, ACC-04)", async 
   await page.context().close();
 });
 
-test("the keyboard alone goes from the door to a value of a plot (ACC-01, ACC-03)", async ({ browser, laboratory, watch }) => {
+test("the keyboard alone goes from the door to a value of a plot (ACC-01, ACC-03)", async ({
+  browser,
+  laboratory,
+  watch,
+}) => {
   test.setTimeout(240_000);
   const page = await open(browser, laboratory.url, { width: 1440, colorScheme: "light", isPhone: false });
   watch.follow(page);
@@ -256,7 +267,9 @@ async function expectTargets(page: Page, least: number): Promise<void> {
       const isElsewhere = element.closest("label, .away, .skip, [aria-hidden=true]") !== null;
       if (!isShown || isInline || isElsewhere) return [];
       return height < side - 0.5 || width < Math.min(side, 24) - 0.5
-        ? [`${element.tagName} ${(element.textContent ?? "").trim().slice(0, 30)} ${Math.round(width)}×${Math.round(height)}`]
+        ? [
+            `${element.tagName} ${(element.textContent ?? "").trim().slice(0, 30)} ${Math.round(width)}×${Math.round(height)}`,
+          ]
         : [];
     });
   }, least);

@@ -44,11 +44,10 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
             You sent this when the revision was no longer a draft. It was not added; it is yours to copy into the next
             one.
           </p>
-          {strays.map(({ id, at, text }) => (
-            <p key={id}>
-              “{text}” <span className="faint">{formatDateTime(at, actor.timeZone)}</span>
-            </p>
-          ))}
+          <p>
+            “{strays.map(({ text }) => text).join("").trim()}”{" "}
+            <span className="faint">until {formatDateTime(strays.at(-1)?.at ?? new Date(), actor.timeZone)}</span>
+          </p>
         </StubSection>
       )}
       <SealsSection entry={entry} timeZone={actor.timeZone} />
