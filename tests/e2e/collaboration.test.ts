@@ -640,6 +640,7 @@ test("what was typed into a field and not entered is offered again after a reloa
   await putInBlock(page);
   await addRow(page, 1, { compound: "citric acid, anhydrous", amount: "0.100", unit: "mol/L" });
   await saved(page);
+  const revisionId = await revisionOf(page);
   await field(page, "Amount, row 1").fill("0.25");
   await expect(saying(page, "Saved; 1 field not entered yet")).toBeVisible();
   await page.reload();
@@ -651,7 +652,6 @@ test("what was typed into a field and not entered is offered again after a reloa
   await field(page, "Amount, row 1").focus();
   await page.keyboard.press("Tab");
   await expect(block(page).getByText(offered)).toBeVisible();
-  const revisionId = await revisionOf(page);
   expect((await serversPage(page, revisionId)).text).toContain("0.100 mol/L");
   await field(page, "Amount, row 1").press("Enter");
   await saved(page);
