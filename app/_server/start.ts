@@ -25,7 +25,8 @@ export async function start(): Promise<void> {
     log.info({ store: kind, demo: set.demo, url: set.url }, "open");
   } catch (error) {
     process.stderr.write(`${error instanceof Error ? error.message : "Counterleaf could not start."}\n`);
-    log.fatal({ error }, "could not start");
+    // What people can set right is said in that sentence; only a fault of the program's own needs its traces.
+    if (!isForPeople(error)) log.fatal({ error }, "could not start");
     await closeAll();
     process.exit(1);
   }
@@ -44,4 +45,10 @@ function endOnSignals(): void {
       });
     });
   }
+}
+
+const FOR_PEOPLE = new Set(["FolderInUse", "FolderUnusable", "SettingsRefused"]);
+
+function isForPeople(error: unknown): boolean {
+  return error instanceof Error && FOR_PEOPLE.has(error.name);
 }
