@@ -4,9 +4,9 @@ import { defineConfig } from "@playwright/test";
 export default defineConfig({
   testDir: "./tests/e2e",
   outputDir: "./.tmp/e2e",
-  timeout: 120_000,
+  timeout: 300_000,
   expect: { timeout: 30_000 },
-  workers: 2,
+  workers: 1,
   fullyParallel: false,
   forbidOnly: true,
   retries: 0,

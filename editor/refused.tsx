@@ -27,7 +27,10 @@ export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedPro
   }, [isClosed, waiting, refetch]);
   const copy = useCopy();
   // One change may hold half a word: what was typed in one go reads as it was typed.
-  const kept = (stray.data ?? []).map((update) => update.text).join("").trim();
+  const kept = (stray.data ?? [])
+    .map((update) => update.text)
+    .join("")
+    .trim();
   if (line.kind !== "refused" && !isClosed) return null;
   if (isClosed) {
     return (
@@ -36,9 +39,7 @@ export function Refused({ revisionId, line, wordsOfPage, onDiscard }: RefusedPro
         finding="This revision is no longer a draft."
         actions={
           <>
-            {kept !== "" ? (
-              <Button onClick={() => void copy(kept)}>Copy what was not added</Button>
-            ) : null}
+            {kept !== "" ? <Button onClick={() => void copy(kept)}>Copy what was not added</Button> : null}
             <Button onClick={() => window.location.reload()}>Show the page as it stands now</Button>
           </>
         }

@@ -45,8 +45,12 @@ export async function EntryLeaf({ label, revision }: { label: string; revision?:
             one.
           </p>
           <p>
-            “{strays.map(({ text }) => text).join("").trim()}”{" "}
-            <span className="faint">until {formatDateTime(strays.at(-1)?.at ?? new Date(), actor.timeZone)}</span>
+            “
+            {strays
+              .map(({ text }) => text)
+              .join("")
+              .trim()}
+            ” <span className="faint">until {formatDateTime(strays.at(-1)?.at ?? new Date(), actor.timeZone)}</span>
           </p>
         </StubSection>
       )}
