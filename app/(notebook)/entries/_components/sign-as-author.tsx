@@ -7,7 +7,6 @@ import { useForm } from "react-hook-form";
 import { z } from "zod";
 import { StubSection } from "../../../../components/leaf/counterfoil.tsx";
 import { StateMark } from "../../../../components/leaf/state-mark.tsx";
-import type { Problem } from "../../../../components/query/http.ts";
 import { Button } from "../../../../components/ui/button.tsx";
 import { Says } from "../../../../components/ui/says.tsx";
 import { TextField } from "../../../../components/ui/text-field.tsx";
@@ -82,7 +81,7 @@ type FormProps = Pick<Props, "label" | "revisionId" | "hash" | "meaning" | "sign
 
 function SignForm({ label, revisionId, hash, meaning, signer, sign }: FormProps) {
   const router = useRouter();
-  const { register, handleSubmit, formState, ...rest } = useForm<z.infer<typeof form> & { changed?: Problem }>({
+  const { register, handleSubmit, formState, ...rest } = useForm<z.infer<typeof form>>({
     resolver: zodResolver(form),
     defaultValues: { password: "" },
   });
